@@ -1,0 +1,1 @@
+//! Placeholder documentation of the crate.
