@@ -1,1 +1,11 @@
-//! Placeholder documentation of the crate.
+//! Exact transfer functions, true order and cancellation proofs of parametric linear networks.
+//!
+//! The rooms, in the order in which they may see each other: [`algebra`], [`network`],
+//! [`analysis`]. Text and messages ([`source`], [`diagnostic`]) and [`budget`] are open to all.
+
+pub mod algebra;
+pub mod analysis;
+pub mod budget;
+pub mod diagnostic;
+pub mod network;
+pub mod source;

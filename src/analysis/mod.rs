@@ -1,0 +1,3 @@
+//! Exact answers about a network.
+
+pub mod report;
