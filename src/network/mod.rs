@@ -4,12 +4,19 @@
 //! the reference. Every value is a symbol or a number; a symbol that a relation sets is tied to
 //! others by a [`Fraction`](crate::algebra::Fraction), the rest are independent.
 
+pub mod blocks;
 pub mod builder;
+pub mod check;
+pub mod cycle;
 pub mod element;
 pub mod graph;
 pub mod id;
+pub mod incidence;
 pub mod question;
 pub mod relation;
+#[cfg(test)]
+pub(crate) mod sketch;
+pub mod topology;
 pub mod value;
 
 pub use builder::NetworkBuilder;

@@ -28,8 +28,6 @@ impl Relation {
     /// only its parameters become independent.
     #[must_use]
     pub fn has_s(&self) -> bool {
-        self.sets
-            .iter()
-            .any(|(_, value)| value.contains(Symbol::S))
+        self.sets.iter().any(|(_, value)| value.contains(Symbol::S))
     }
 }
