@@ -1,0 +1,61 @@
+//! Where the order of a function is lower: the zeros of its leading coefficient.
+
+use std::collections::BTreeSet;
+
+use crate::algebra::Polynomial;
+use crate::algebra::factor::factor;
+use crate::analysis::knowledge::Knowledge;
+use crate::analysis::report::{Drop, Verdict};
+use crate::budget::{Budget, Exceeded};
+
+/// Conditions at which `leading` is zero, and what the proofs rest on.
+///
+/// One entry with the whole coefficient when it is proven never to be zero; otherwise one for each
+/// irreducible factor that is not proven so.
+pub(crate) fn drops(
+    leading: &Polynomial,
+    knowledge: &Knowledge<'_>,
+    budget: &Budget,
+) -> Result<(Vec<Drop>, BTreeSet<String>), Exceeded> {
+    if leading.is_constant() {
+        return Ok((Vec::new(), BTreeSet::new()));
+    }
+    if let Some(judgement) = knowledge.judge(leading) {
+        if judgement.sign.is_never_zero() {
+            return Ok((vec![never(leading)], judgement.relied_on));
+        }
+    }
+    let mut open = Vec::new();
+    let mut relied_on = BTreeSet::new();
+    for (condition, _) in factor(leading, budget)?.factors {
+        let judgement = knowledge.judge(&condition);
+        if let Some(judgement) = judgement {
+            if judgement.sign.is_never_zero() {
+                relied_on.extend(judgement.relied_on);
+                continue;
+            }
+        }
+        let example = knowledge.zero_of(&condition);
+        open.push(Drop {
+            possible: if example.is_some() {
+                Verdict::Yes
+            } else {
+                Verdict::Undecided
+            },
+            condition,
+            example: example.unwrap_or_default(),
+        });
+    }
+    if open.is_empty() {
+        open.push(never(leading));
+    }
+    Ok((open, relied_on))
+}
+
+fn never(leading: &Polynomial) -> Drop {
+    Drop {
+        condition: leading.clone(),
+        possible: Verdict::No,
+        example: Vec::new(),
+    }
+}

@@ -1,0 +1,82 @@
+//! Relations put in: the value of every symbol over the independent ones.
+
+use std::collections::{BTreeMap, BTreeSet};
+
+use crate::algebra::{Fraction, Symbol};
+use crate::budget::{Budget, Exceeded};
+use crate::network::{Network, RelationId};
+
+/// The value of each symbol that a relation sets, over symbols that none sets.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Substitution {
+    values: BTreeMap<Symbol, Fraction>,
+    /// Relations whose denominators vanish identically under the others.
+    pub(crate) undefined: Vec<RelationId>,
+}
+
+impl Substitution {
+    /// All relations of the network.
+    pub(crate) fn new(network: &Network, budget: &Budget) -> Result<Self, Exceeded> {
+        let mut substitution = Self::default();
+        for id in resolution_order(network) {
+            for (symbol, value) in &network.relation(id).sets {
+                match substitution.apply(value, budget)? {
+                    Some(resolved) => {
+                        substitution.values.insert(*symbol, resolved);
+                    }
+                    None => substitution.undefined.push(id),
+                }
+            }
+        }
+        Ok(substitution)
+    }
+
+    /// The value of a symbol; itself when no relation sets it.
+    pub(crate) fn value(&self, symbol: Symbol) -> Fraction {
+        self.values
+            .get(&symbol)
+            .cloned()
+            .unwrap_or_else(|| Fraction::symbol(symbol))
+    }
+
+    /// A fraction with every relation put in; `None` when its denominator becomes zero.
+    pub(crate) fn apply(
+        &self,
+        fraction: &Fraction,
+        budget: &Budget,
+    ) -> Result<Option<Fraction>, Exceeded> {
+        if self.values.is_empty() {
+            return Ok(Some(fraction.clone()));
+        }
+        fraction.substitute(&|symbol| self.values.get(&symbol).cloned(), budget)
+    }
+}
+
+/// All relations, each after those its right side needs. Iterative: chains may be long.
+pub(crate) fn resolution_order(network: &Network) -> Vec<RelationId> {
+    let mut order = Vec::with_capacity(network.relations().len());
+    let mut seen = BTreeSet::new();
+    for (root, _) in network.relations() {
+        let mut stack = vec![(root, false)];
+        while let Some((id, ready)) = stack.pop() {
+            if ready {
+                order.push(id);
+                continue;
+            }
+            if !seen.insert(id) {
+                continue;
+            }
+            stack.push((id, true));
+            for (_, value) in &network.relation(id).sets {
+                for symbol in value.symbols() {
+                    if let Some(needed) = network.set_by(symbol) {
+                        if !seen.contains(&needed) {
+                            stack.push((needed, false));
+                        }
+                    }
+                }
+            }
+        }
+    }
+    order
+}
