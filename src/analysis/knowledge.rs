@@ -200,7 +200,8 @@ impl<'a> Knowledge<'a> {
         None
     }
 
-    fn trial(&self, symbol: Symbol, attempt: usize) -> Rational {
+    /// A value to try for a symbol: its nominal first, then small numbers.
+    pub(crate) fn trial(&self, symbol: Symbol, attempt: usize) -> Rational {
         let facts = self.network.facts(symbol);
         if attempt == 0 {
             if let Some(nominal) = facts.and_then(|facts| facts.nominal.clone()) {
