@@ -100,7 +100,10 @@ impl SignRules<'_> {
         let mut strict = false;
         for _ in 0..STEPS {
             if self.uncovered(&rest) == 0 {
-                strict |= rest.terms().iter().any(|(monomial, _)| self.is_positive(monomial));
+                strict |= rest
+                    .terms()
+                    .iter()
+                    .any(|(monomial, _)| self.is_positive(monomial));
                 let sign = if strict {
                     ProvenSign::Positive
                 } else {
@@ -128,7 +131,9 @@ impl SignRules<'_> {
     }
 
     fn is_positive(&self, monomial: &Monomial) -> bool {
-        monomial.factors().all(|(symbol, _)| (self.positive)(symbol))
+        monomial
+            .factors()
+            .all(|(symbol, _)| (self.positive)(symbol))
     }
 
     fn is_not_negative(&self, monomial: &Monomial) -> bool {
@@ -211,8 +216,14 @@ mod tests {
             positive: &|_| true,
             facts: Vec::new(),
         };
-        assert_eq!(rules.sign(&(&a + &b)).map(|s| s.0), Some(ProvenSign::Positive));
-        assert_eq!(rules.sign(&-(&a * &b)).map(|s| s.0), Some(ProvenSign::Negative));
+        assert_eq!(
+            rules.sign(&(&a + &b)).map(|s| s.0),
+            Some(ProvenSign::Positive)
+        );
+        assert_eq!(
+            rules.sign(&-(&a * &b)).map(|s| s.0),
+            Some(ProvenSign::Negative)
+        );
         assert!(rules.sign(&(&a - &b)).is_none());
     }
 
@@ -227,7 +238,10 @@ mod tests {
         assert!(rules.sign(&(&a + &b)).is_none());
         let square = &(&a * &a) + &b;
         assert_eq!(rules.sign(&square).map(|s| s.0), Some(ProvenSign::Positive));
-        assert_eq!(rules.sign(&(&a * &a)).map(|s| s.0), Some(ProvenSign::NonNegative));
+        assert_eq!(
+            rules.sign(&(&a * &a)).map(|s| s.0),
+            Some(ProvenSign::NonNegative)
+        );
     }
 
     #[test]
@@ -251,6 +265,9 @@ mod tests {
                 strict: false,
             }],
         };
-        assert_eq!(weak.sign(&(&a - &b)).map(|s| s.0), Some(ProvenSign::NonNegative));
+        assert_eq!(
+            weak.sign(&(&a - &b)).map(|s| s.0),
+            Some(ProvenSign::NonNegative)
+        );
     }
 }

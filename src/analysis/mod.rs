@@ -1,3 +1,4 @@
 //! Exact answers about a network.
 
+pub mod normal;
 pub mod report;

@@ -72,7 +72,8 @@ mod tests {
         let mut names = SymbolTable::new();
         let mut symbol = |name: &str| Polynomial::symbol(names.intern(name));
         let (b, a, r10, r2) = (symbol("b"), symbol("a"), symbol("R10"), symbol("R2"));
-        let sum = &(&(&(&a * &b) + &(&a * &a)) + &(&b * &b)) + &(&(&r10 + &r2) + &Polynomial::one());
+        let sum =
+            &(&(&(&a * &b) + &(&a * &a)) + &(&b * &b)) + &(&(&r10 + &r2) + &Polynomial::one());
         let written: Vec<Monomial> = written_terms(&sum, &names)
             .into_iter()
             .map(|(monomial, _)| monomial.clone())

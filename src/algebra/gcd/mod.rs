@@ -1,0 +1,227 @@
+//! Greatest common divisors of polynomials over the integers.
+//!
+//! First the variables the divisor can contain are found modulo a prime; the others are set to
+//! integers. What is left is small: evaluation at one large integer, one variable at a time, and
+//! proof by exact division (Char, Geddes & Gonnet 1989).
+
+use crate::algebra::integer::Integer;
+use crate::algebra::polynomial::Polynomial;
+use crate::algebra::prime_field::PrimeField;
+use crate::algebra::symbol::Symbol;
+use crate::algebra::univariate::Univariate;
+use crate::budget::{Budget, Exceeded};
+
+mod heuristic;
+
+/// gcd(a, b), its number included, leading coefficient positive; gcd(0, 0) = 0.
+///
+/// # Errors
+/// When the budget is reached.
+pub fn gcd(a: &Polynomial, b: &Polynomial, budget: &Budget) -> Result<Polynomial, Exceeded> {
+    if a.is_zero() || b.is_zero() {
+        let other = if a.is_zero() { b } else { a };
+        return Ok(positive(other.clone()));
+    }
+    let number = a.content().gcd(&b.content());
+    let monomial = a.monomial_content().gcd(&b.monomial_content());
+    let common = Polynomial::monomial(number, monomial);
+    if a.is_constant() || b.is_constant() {
+        return Ok(common);
+    }
+    let strip = |polynomial: &Polynomial| {
+        let monomial = Polynomial::monomial(Integer::one(), polynomial.monomial_content());
+        polynomial
+            .primitive()
+            .div_exact(&monomial)
+            .unwrap_or_else(|| polynomial.primitive())
+    };
+    let rest = without_content(&strip(a), &strip(b), budget)?;
+    Ok(positive(&rest * &common))
+}
+
+/// gcd, and what is left of both: (g, a/g, b/g).
+///
+/// # Errors
+/// When the budget is reached.
+pub fn cofactors(
+    a: &Polynomial,
+    b: &Polynomial,
+    budget: &Budget,
+) -> Result<(Polynomial, Polynomial, Polynomial), Exceeded> {
+    let common = gcd(a, b, budget)?;
+    let divide = |polynomial: &Polynomial| {
+        polynomial
+            .div_exact(&common)
+            .unwrap_or_else(|| polynomial.clone())
+    };
+    let (left, right) = (divide(a), divide(b));
+    Ok((common, left, right))
+}
+
+fn positive(polynomial: Polynomial) -> Polynomial {
+    if polynomial.lead().signum() < 0 {
+        -polynomial
+    } else {
+        polynomial
+    }
+}
+
+/// gcd of primitive polynomials without monomial content.
+fn without_content(
+    a: &Polynomial,
+    b: &Polynomial,
+    budget: &Budget,
+) -> Result<Polynomial, Exceeded> {
+    if a == b {
+        return Ok(a.clone());
+    }
+    for attempt in 0.. {
+        budget.time()?;
+        let variables = shared_variables(a, b, attempt);
+        if variables.is_empty() {
+            return Ok(Polynomial::one());
+        }
+        let small = |polynomial: &Polynomial| {
+            polynomial
+                .evaluate(&|symbol| {
+                    (!variables.contains(&symbol)).then(|| {
+                        let number = spread(attempt, symbol) % 97 + 2;
+                        Integer::from(number).into()
+                    })
+                })
+                .0
+        };
+        let (left, right) = (small(a), small(b));
+        if left.is_zero() || right.is_zero() {
+            continue;
+        }
+        let found = heuristic::gcd(&left.primitive(), &right.primitive(), &variables, budget)?;
+        let found = positive(found.primitive());
+        if a.div_exact(&found).is_some() && b.div_exact(&found).is_some() {
+            return Ok(found);
+        }
+    }
+    Ok(Polynomial::one())
+}
+
+/// The variables in which the gcd has positive degree, found one at a time at a random point modulo a
+/// prime. A variable too many is possible at an unlucky point, one too few is not.
+fn shared_variables(a: &Polynomial, b: &Polynomial, attempt: u64) -> Vec<Symbol> {
+    let field = PrimeField::default_prime();
+    let others = b.symbols();
+    a.symbols()
+        .into_iter()
+        .filter(|symbol| others.contains(symbol))
+        .filter(|&symbol| {
+            let left = along(a, symbol, attempt, &field);
+            let right = along(b, symbol, attempt, &field);
+            left.gcd(&right, &field).degree() != Some(0)
+        })
+        .collect()
+}
+
+/// The polynomial in one variable at random values of the others.
+fn along(
+    polynomial: &Polynomial,
+    variable: Symbol,
+    attempt: u64,
+    field: &PrimeField,
+) -> Univariate {
+    let mut coefficients = vec![0; polynomial.degree(variable) as usize + 1];
+    for (monomial, coefficient) in polynomial.terms() {
+        let mut value = field.from_integer(coefficient);
+        let mut power = 0;
+        for (symbol, exponent) in monomial.factors() {
+            if symbol == variable {
+                power = exponent as usize;
+            } else {
+                let at = spread(attempt, symbol) % field.prime();
+                value = field.mul(value, field.pow(at, u64::from(exponent)));
+            }
+        }
+        coefficients[power] = field.add(coefficients[power], value);
+    }
+    Univariate::new(coefficients)
+}
+
+/// Fixed pseudo-random words (SplitMix64).
+fn spread(attempt: u64, symbol: Symbol) -> u64 {
+    let mut word = (symbol.index() as u64 + 1)
+        .wrapping_mul(0x9E37_79B9_7F4A_7C15)
+        .wrapping_add(attempt.wrapping_mul(0xD1B5_4A32_D192_ED03));
+    word = (word ^ (word >> 30)).wrapping_mul(0xBF58_476D_1CE4_E5B9);
+    word = (word ^ (word >> 27)).wrapping_mul(0x94D0_49BB_1331_11EB);
+    word ^ (word >> 31)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::algebra::SymbolTable;
+
+    /// A small random polynomial in the given symbols.
+    fn random(seed: &mut u64, symbols: &[Polynomial], terms: usize) -> Polynomial {
+        let mut next = |below: u64| {
+            *seed ^= *seed << 13;
+            *seed ^= *seed >> 7;
+            *seed ^= *seed << 17;
+            *seed % below
+        };
+        let mut sum = Polynomial::zero();
+        for _ in 0..terms {
+            let mut term = Polynomial::constant(i64::try_from(next(19)).unwrap_or(0) - 9);
+            for symbol in symbols {
+                term = &term * &symbol.pow(u32::try_from(next(3)).unwrap_or(0));
+            }
+            sum = &sum + &term;
+        }
+        sum
+    }
+
+    #[test]
+    fn a_product_gives_its_common_factor_back() {
+        let mut table = SymbolTable::new();
+        let symbols: Vec<Polynomial> = ["s", "a", "b", "c", "d"]
+            .iter()
+            .map(|name| Polynomial::symbol(table.intern(name)))
+            .collect();
+        let budget = Budget::unlimited();
+        let mut seed = 20_261_201;
+        for round in 0..60 {
+            let count = 2 + round % 4;
+            let mut make = |terms| random(&mut seed, &symbols[..count], terms);
+            let (f, g, h) = (make(4), make(4), make(3));
+            if f.is_zero() || g.is_zero() || h.is_zero() {
+                continue;
+            }
+            let (common, left, right) = cofactors(&(&f * &h), &(&g * &h), &budget).expect("budget");
+            assert_eq!(&common * &left, &f * &h, "round {round}");
+            assert_eq!(&common * &right, &g * &h, "round {round}");
+            assert!(
+                common.div_exact(&positive(h.clone())).is_some(),
+                "round {round}"
+            );
+            assert!(
+                gcd(&left, &right, &budget).expect("budget").is_one(),
+                "round {round}"
+            );
+        }
+    }
+
+    #[test]
+    fn zero_and_numbers() {
+        let budget = Budget::unlimited();
+        let six = Polynomial::constant(6);
+        let four = Polynomial::constant(-4);
+        assert_eq!(gcd(&six, &four, &budget), Ok(Polynomial::constant(2)));
+        assert_eq!(
+            gcd(&Polynomial::zero(), &four, &budget),
+            Ok(Polynomial::constant(4))
+        );
+        assert!(
+            gcd(&Polynomial::zero(), &Polynomial::zero(), &budget)
+                .expect("ok")
+                .is_zero()
+        );
+    }
+}
