@@ -1,0 +1,117 @@
+//! How much of a formula is written in place, and names for coefficients where it is long.
+
+use crate::algebra::Polynomial;
+use crate::analysis::report::Expanded;
+use crate::render::math::{self, Math};
+use crate::render::names::Names;
+use crate::render::nest;
+
+/// Up to this many terms a formula is written in one piece.
+const IN_PLACE: usize = 40;
+/// Up to this many terms coefficients are written as sums; above it in nested form.
+const AS_SUMS: usize = 300;
+
+/// The way a formula of some length is written.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Manner {
+    /// In one piece.
+    InPlace,
+    /// With named coefficients.
+    Named,
+    /// With named coefficients in nested form.
+    Nested,
+}
+
+/// Terms of numerator and denominator.
+#[must_use]
+pub fn term_counts(formula: &Expanded) -> (usize, usize) {
+    let count = |side: &[Polynomial]| side.iter().map(Polynomial::len).sum();
+    (count(&formula.numerator), count(&formula.denominator))
+}
+
+/// The way a formula is written.
+#[must_use]
+pub fn manner(formula: &Expanded) -> Manner {
+    let (above, below) = term_counts(formula);
+    match above + below {
+        0..=IN_PLACE => Manner::InPlace,
+        count if count <= AS_SUMS => Manner::Named,
+        _ => Manner::Nested,
+    }
+}
+
+/// A coefficient with its name.
+#[derive(Clone, Debug)]
+pub struct Definition {
+    /// Name, such as `b1`.
+    pub name: String,
+    /// What it stands for.
+    pub value: Math,
+    /// Terms when expanded.
+    pub terms: usize,
+}
+
+/// A formula over named coefficients.
+#[derive(Clone, Debug)]
+pub struct NamedForm {
+    /// Numerator, over the names.
+    pub numerator: Math,
+    /// Denominator, over the names.
+    pub denominator: Math,
+    /// What the names stand for, numerator first.
+    pub definitions: Vec<Definition>,
+}
+
+/// Gives names to all coefficients that are not numbers.
+#[must_use]
+pub fn named(formula: &Expanded, names: &Names<'_>) -> NamedForm {
+    let (above, below) = letters(formula, names);
+    let nested = manner(formula) == Manner::Nested;
+    let mut definitions = Vec::new();
+    let mut side = |coefficients: &[Polynomial], letter: &str| {
+        let parts = coefficients.iter().enumerate();
+        let parts = parts.filter(|(_, coefficient)| !coefficient.is_zero());
+        Math::sum(parts.map(|(power, coefficient)| {
+            let factor = if coefficient.is_constant() {
+                math::polynomial(coefficient, names)
+            } else {
+                let name = format!("{letter}{power}");
+                let factor = Math::name(&name);
+                definitions.push(define(name, coefficient, nested, names));
+                factor
+            };
+            let power = u32::try_from(power).unwrap_or(u32::MAX);
+            Math::product([factor, Math::name("s").power(power)])
+        }))
+    };
+    let numerator = side(&formula.numerator, above);
+    let denominator = side(&formula.denominator, below);
+    NamedForm {
+        numerator,
+        denominator,
+        definitions,
+    }
+}
+
+fn define(name: String, value: &Polynomial, nested: bool, names: &Names<'_>) -> Definition {
+    Definition {
+        name,
+        value: if nested {
+            nest::nested(value, names)
+        } else {
+            math::polynomial(value, names)
+        },
+        terms: value.len(),
+    }
+}
+
+/// Letters whose numbered forms are no names of the network.
+fn letters(formula: &Expanded, names: &Names<'_>) -> (&'static str, &'static str) {
+    const PAIRS: [(&str, &str); 5] = [("a", "b"), ("n", "d"), ("p", "q"), ("α", "β"), ("a_", "b_")];
+    let powers = formula.numerator.len().max(formula.denominator.len());
+    let free = |letter: &str| (0..powers).all(|power| !names.is_taken(&format!("{letter}{power}")));
+    let found = PAIRS
+        .into_iter()
+        .find(|(above, below)| free(above) && free(below));
+    found.unwrap_or(("num_", "den_"))
+}

@@ -1,0 +1,301 @@
+//! The JSON of the answers. Expressions are strings in the syntax of the language, integers exact.
+
+use serde_json::{Map, Value, json};
+
+use crate::algebra::Polynomial;
+use crate::analysis::report::{
+    Cancellation, ClaimReport, Drop, Expanded, Finding, Formula, FunctionReport, Nested,
+    NetworkOrder, Verdict,
+};
+use crate::diagnostic::Diagnostic;
+use crate::network::CancellationClass;
+use crate::render::answer::{Answer, Detail};
+use crate::render::linear::MACHINE;
+use crate::render::math::{self, Math};
+use crate::render::names::{FrequencyPlace, Names};
+use crate::render::sentence;
+use crate::source::{SourceId, Sources};
+
+type Object = Map<String, Value>;
+
+/// The answer about one file.
+#[must_use]
+pub fn answer(answer: &Answer<'_>) -> Value {
+    let mut object = Object::new();
+    object.insert("cutloop".into(), json!(1));
+    object.insert("file".into(), json!(answer.file()));
+    if let Some(title) = answer.network.title() {
+        object.insert("title".into(), json!(title));
+    }
+    object.insert("order".into(), order(answer, &answer.report.order));
+    if answer.detail == Detail::Claims {
+        let claims = answer.report.claims.iter();
+        object.insert(
+            "claims".into(),
+            claims.map(|it| claim(answer, it)).collect(),
+        );
+    } else {
+        let results = answer.report.results.iter();
+        object.insert(
+            "results".into(),
+            results.map(|it| result(answer, it)).collect(),
+        );
+    }
+    let main = Some(answer.source);
+    let warnings = answer.all_warnings();
+    object.insert(
+        "warnings".into(),
+        warnings
+            .map(|it| message(it, answer.sources, main))
+            .collect(),
+    );
+    Value::Object(object)
+}
+
+/// The answer about a file that cannot be used or was not answered. `file` is named where there are
+/// several.
+#[must_use]
+pub fn errors(
+    diagnostics: &[Diagnostic],
+    sources: &Sources,
+    main: Option<SourceId>,
+    file: Option<&str>,
+) -> Value {
+    let mut object = Object::new();
+    object.insert("cutloop".into(), json!(1));
+    if let Some(file) = file {
+        object.insert("file".into(), json!(file));
+    }
+    let errors = diagnostics.iter().filter(|it| it.is_error());
+    object.insert(
+        "errors".into(),
+        errors.map(|it| message(it, sources, main)).collect(),
+    );
+    Value::Object(object)
+}
+
+/// Message with line, column and help where they are known; the file where it is not the main one.
+fn message(diagnostic: &Diagnostic, sources: &Sources, main: Option<SourceId>) -> Value {
+    let mut object = Object::new();
+    object.insert("message".into(), json!(diagnostic.message));
+    if let Some(place) = diagnostic.place {
+        let (line, column) = sources.position(place);
+        object.insert("line".into(), json!(line));
+        object.insert("column".into(), json!(column));
+        if main.is_some_and(|main| main != place.source) {
+            object.insert("file".into(), json!(sources.get(place.source).name));
+        }
+    }
+    if let Some(help) = &diagnostic.help {
+        object.insert("help".into(), json!(help));
+    }
+    Value::Object(object)
+}
+
+fn order(answer: &Answer<'_>, order: &NetworkOrder) -> Value {
+    let lists =
+        |sets: &[Vec<_>]| -> Vec<Vec<&str>> { sets.iter().map(|set| answer.parts(set)).collect() };
+    let static_sets = order.static_sets.iter();
+    let static_sets: Vec<_> = static_sets.map(|set| answer.parts(&set.members)).collect();
+    json!({
+        "reactive": order.reactive.len(),
+        "device_states": order.device_states,
+        "capacitor_loops": lists(&order.capacitor_loops),
+        "inductor_cutsets": lists(&order.inductor_cutsets),
+        "constraints": order.constraints,
+        "network": order.network,
+        "static": order.static_modes,
+        "moving": order.moving(),
+        "static_sets": static_sets,
+        "integrators": order.integrators,
+    })
+}
+
+fn result(answer: &Answer<'_>, result: &FunctionReport) -> Value {
+    let names = answer.names(FrequencyPlace::Last);
+    let mut object = Object::new();
+    object.insert("name".into(), json!(result.name));
+    object.insert("asks".into(), json!(answer.question(result).text));
+    if answer.detail != Detail::Order {
+        insert_formula(&mut object, &result.formula, &names);
+    }
+    insert_degrees(&mut object, answer, result, &names);
+    if answer.detail == Detail::Audit
+        && let Some(list) = &result.cancellations
+    {
+        let list = list.iter().map(|it| cancellation(answer, it, &names));
+        object.insert("cancellations".into(), list.collect());
+    }
+    if !result.relied_on.is_empty() {
+        object.insert("relied_on".into(), json!(result.relied_on));
+    }
+    if answer.detail != Detail::Order && result.checked_points > 0 {
+        let checked = json!({
+            "method": "exact substitution", "points": result.checked_points, "agree": true,
+        });
+        object.insert("checked".into(), checked);
+    }
+    Value::Object(object)
+}
+
+fn insert_formula(object: &mut Object, formula: &Formula, names: &Names<'_>) {
+    match formula {
+        Formula::Expanded(Expanded {
+            numerator,
+            denominator,
+        }) => {
+            let list = |side: &[Polynomial]| -> Vec<String> {
+                side.iter().map(|it| expression(it, names)).collect()
+            };
+            object.insert("numerator".into(), json!(list(numerator)));
+            object.insert("denominator".into(), json!(list(denominator)));
+        }
+        Formula::Nested(form) => {
+            object.insert("nested".into(), nested(form, names));
+        }
+        Formula::OverBudget(exceeded) => {
+            object.insert("over_budget".into(), json!(sentence::over_budget(exceeded)));
+        }
+    }
+}
+
+fn nested(form: &Nested, names: &Names<'_>) -> Value {
+    let shared = form.definitions.iter().map(|(symbol, _)| *symbol);
+    let names = names
+        .clone()
+        .with_shared(shared.zip(form.names.iter().map(String::as_str)));
+    let definitions = form.definitions.iter().zip(&form.names);
+    let definitions: Vec<Value> = definitions
+        .map(|((_, value), name)| json!({ "name": name, "value": expression(value, &names) }))
+        .collect();
+    json!({
+        "definitions": definitions,
+        "numerator": expression(&form.numerator, &names),
+        "denominator": expression(&form.denominator, &names),
+        "numerator_terms": form.terms.0.to_string(),
+        "denominator_terms": form.terms.1.to_string(),
+        "common_degree": form.common_degree,
+    })
+}
+
+fn insert_degrees(
+    object: &mut Object,
+    answer: &Answer<'_>,
+    result: &FunctionReport,
+    names: &Names<'_>,
+) {
+    object.insert("order".into(), json!(result.order));
+    object.insert("numerator_order".into(), json!(result.numerator_order));
+    if let Some(network) = result.network {
+        object.insert("network".into(), json!(network));
+    }
+    if let Some(hidden) = result.hidden {
+        object.insert("hidden".into(), json!(hidden));
+    }
+    object.insert("zero".into(), json!(result.zero));
+    let no_effect = result.no_effect.iter();
+    object.insert(
+        "no_effect".into(),
+        no_effect.map(|it| answer.part(it.element)).collect(),
+    );
+    let drops = result.drops_when.iter();
+    object.insert(
+        "drops_when".into(),
+        drops.map(|it| drop(it, names)).collect(),
+    );
+}
+
+fn drop(drop: &Drop, names: &Names<'_>) -> Value {
+    json!({
+        "condition": expression(&drop.condition, names),
+        "possible": sentence::verdict(drop.possible),
+    })
+}
+
+fn cancellation(answer: &Answer<'_>, it: &Cancellation, names: &Names<'_>) -> Value {
+    let mut object = Object::new();
+    object.insert("class".into(), json!(sentence::class(it.class)));
+    object.insert("factor".into(), json!(expression(&it.factor, names)));
+    object.insert("degree".into(), json!(it.degree));
+    object.insert("multiplicity".into(), json!(it.multiplicity));
+    if let Some(hides) = it.hides {
+        object.insert("hides".into(), json!(sentence::hides(hides)));
+    }
+    match it.class {
+        CancellationClass::Structural => {
+            object.insert("parts".into(), json!(it.parts));
+            if !it.static_set.is_empty() {
+                object.insert("static_set".into(), json!(it.static_set));
+            }
+        }
+        CancellationClass::Matched => insert_causes(&mut object, answer, it),
+        CancellationClass::Coincidental => {
+            object.insert("condition".into(), conditions(&it.conditions, names));
+        }
+    }
+    if !it.factored {
+        object.insert("factored".into(), json!(false));
+    }
+    Value::Object(object)
+}
+
+fn insert_causes(object: &mut Object, answer: &Answer<'_>, it: &Cancellation) {
+    object.insert("because".into(), json!(answer.relations(&it.because)));
+    if !it.also_because.is_empty() {
+        let sets = it.also_because.iter();
+        let sets: Vec<_> = sets.map(|set| answer.relations(set)).collect();
+        object.insert("also_because".into(), json!(sets));
+    }
+}
+
+/// One condition is a string, several are a list.
+fn conditions(list: &[Polynomial], names: &Names<'_>) -> Value {
+    match list {
+        [condition] => json!(expression(condition, names)),
+        several => several.iter().map(|it| expression(it, names)).collect(),
+    }
+}
+
+fn claim(answer: &Answer<'_>, report: &ClaimReport) -> Value {
+    let claim = &answer.network.claims()[report.claim];
+    let (line, column) = answer.sources.position(claim.place);
+    let holds = match report.holds {
+        Verdict::Yes => json!(true),
+        Verdict::No => json!(false),
+        Verdict::Undecided => Value::Null,
+    };
+    let mut object = Object::new();
+    object.insert("text".into(), json!(claim.text));
+    object.insert("holds".into(), holds);
+    object.insert("line".into(), json!(line));
+    object.insert("column".into(), json!(column));
+    if !report.findings.is_empty() {
+        let names = answer.names(FrequencyPlace::Last);
+        let findings = report.findings.iter().map(|it| finding(it, &names));
+        object.insert("findings".into(), findings.collect());
+    }
+    if !report.relied_on.is_empty() {
+        object.insert("relied_on".into(), json!(report.relied_on));
+    }
+    Value::Object(object)
+}
+
+fn finding(finding: &Finding, names: &Names<'_>) -> Value {
+    let mut object = Object::new();
+    object.insert("label".into(), json!(finding.label));
+    if let Some(text) = &finding.text {
+        object.insert("text".into(), json!(text));
+    }
+    if let Some((above, below)) = &finding.formula {
+        let above = math::polynomial(above, names);
+        let quotient = Math::quotient(above, math::polynomial(below, names));
+        object.insert("formula".into(), json!(MACHINE.spell(&quotient)));
+    }
+    Value::Object(object)
+}
+
+/// A polynomial in the syntax of the language.
+#[must_use]
+pub fn expression(polynomial: &Polynomial, names: &Names<'_>) -> String {
+    MACHINE.spell(&math::polynomial(polynomial, names))
+}

@@ -1,0 +1,17 @@
+//! Reports as text, JSON and LaTeX. Expressions become one tree in [`math`]; writers only spell it.
+//!
+//! The input is an [`Answer`]: a network, its report and what was asked. Nothing is decided here that
+//! the analysis has not decided: a result that was not written down whole is never shown in part.
+
+pub mod answer;
+pub mod coefficients;
+pub mod json;
+pub mod latex;
+pub mod linear;
+pub mod math;
+pub mod names;
+pub mod nest;
+pub mod sentence;
+pub mod text;
+
+pub use answer::{Answer, Detail};

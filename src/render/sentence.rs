@@ -1,0 +1,160 @@
+//! Words and short sentences that all writers share.
+
+use crate::algebra::Polynomial;
+use crate::analysis::report::{Hides, Stored, Verdict};
+use crate::budget::Exceeded;
+use crate::network::CancellationClass;
+use crate::render::linear::READING;
+use crate::render::math::{self, Math};
+use crate::render::names::Names;
+
+/// `no`, `yes`, `not decided`.
+#[must_use]
+pub fn verdict(verdict: Verdict) -> &'static str {
+    match verdict {
+        Verdict::Yes => "yes",
+        Verdict::No => "no",
+        Verdict::Undecided => "not decided",
+    }
+}
+
+/// The class of a cancellation.
+#[must_use]
+pub fn class(class: CancellationClass) -> &'static str {
+    match class {
+        CancellationClass::Structural => "structural",
+        CancellationClass::Matched => "matched",
+        CancellationClass::Coincidental => "coincidental",
+    }
+}
+
+/// Which side hides a mode.
+#[must_use]
+pub fn hides(hides: Hides) -> &'static str {
+    match hides {
+        Hides::NotDriven => "not driven",
+        Hides::NotSeen => "not seen",
+        Hides::Both => "both",
+    }
+}
+
+/// What a static set keeps.
+#[must_use]
+pub fn stored(stored: Stored) -> &'static str {
+    match stored {
+        Stored::Charge => "charge",
+        Stored::Flux => "flux",
+    }
+}
+
+/// Why a formula is missing.
+#[must_use]
+pub fn over_budget(exceeded: &Exceeded) -> String {
+    format!("not written down: {exceeded}")
+}
+
+/// A number with its noun: `1 claim`, `3 claims`.
+#[must_use]
+pub fn counted(number: usize, singular: &str, plural: &str) -> String {
+    let noun = if number == 1 { singular } else { plural };
+    format!("{number} {noun}")
+}
+
+/// A list in words: `R1`, `R1 and R2`, `R1, R2 and R3`.
+#[must_use]
+pub fn listed<S: AsRef<str>>(items: &[S]) -> String {
+    match items {
+        [] => String::new(),
+        [only] => only.as_ref().to_owned(),
+        [first @ .., last] => {
+            let first: Vec<&str> = first.iter().map(AsRef::as_ref).collect();
+            format!("{} and {}", first.join(", "), last.as_ref())
+        }
+    }
+}
+
+/// Names with long runs of numbers drawn together: `C1 … C40`, `L1`.
+#[must_use]
+pub fn runs<S: AsRef<str>>(names: &[S]) -> Vec<String> {
+    const SHORTEST: usize = 5;
+    let mut list = Vec::new();
+    let mut start = 0;
+    while start < names.len() {
+        let mut end = start + 1;
+        while end < names.len() && follows(names[end - 1].as_ref(), names[end].as_ref()) {
+            end += 1;
+        }
+        if end - start >= SHORTEST {
+            let (first, last) = (names[start].as_ref(), names[end - 1].as_ref());
+            list.push(format!("{first} … {last}"));
+        } else {
+            list.extend(
+                names[start..end]
+                    .iter()
+                    .map(|name| name.as_ref().to_owned()),
+            );
+        }
+        start = end;
+    }
+    list
+}
+
+/// Whether a name is the one before it with its number raised by one.
+fn follows(before: &str, name: &str) -> bool {
+    let split = |text: &str| {
+        let stem = text.trim_end_matches(|letter: char| letter.is_ascii_digit());
+        let number: Option<u64> = text[stem.len()..].parse().ok();
+        (stem.to_owned(), number)
+    };
+    let ((stem, number), (next_stem, next)) = (split(before), split(name));
+    stem == next_stem && number.is_some() && number.and_then(|it| it.checked_add(1)) == next
+}
+
+/// A condition `p = 0` with its negative terms brought to the other side: `R1·C1 = R2·C2`.
+#[must_use]
+pub fn equation(condition: &Polynomial, names: &Names<'_>) -> String {
+    let whole = math::by_powers_of_s(condition, names);
+    let terms = whole.terms();
+    let side = |wanted: bool| {
+        let terms = terms.iter().filter(|(negative, _)| *negative == wanted);
+        READING.spell(&Math::sum(terms.map(|(_, body)| (*body).clone())))
+    };
+    format!("{} = {}", side(false), side(true))
+}
+
+/// Digits in groups of three with blanks: `12 345`.
+#[must_use]
+pub fn grouped(digits: &str) -> String {
+    let mut text = String::new();
+    for (index, digit) in digits.chars().enumerate() {
+        if index > 0 && (digits.len() - index) % 3 == 0 {
+            text.push(' ');
+        }
+        text.push(digit);
+    }
+    text
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn lists_read_as_sentences() {
+        assert_eq!(listed(&["R1"]), "R1");
+        assert_eq!(listed(&["R1", "R2", "C1"]), "R1, R2 and C1");
+    }
+
+    #[test]
+    fn runs_of_numbers_are_drawn_together() {
+        let names = ["C1", "C2", "C3", "C4", "C5", "C7", "L1", "L2"];
+        assert_eq!(runs(&names), ["C1 … C5", "C7", "L1", "L2"]);
+        assert_eq!(runs(&["a", "a"]), ["a", "a"]);
+    }
+
+    #[test]
+    fn long_numbers_stand_in_groups() {
+        assert_eq!(grouped("1234567"), "1 234 567");
+        assert_eq!(grouped("123"), "123");
+    }
+}

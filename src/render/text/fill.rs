@@ -1,0 +1,181 @@
+//! Breaks long sums into lines, before a sign, aligned inside the parenthesis that is open.
+
+use crate::render::linear::READING;
+use crate::render::math::{Bars, Math, Within};
+use crate::render::text::block::columns;
+
+/// Lines of an expression, none wider than `width` as far as single terms allow. Lines after the
+/// first start `hang` columns further left or right as their sign needs: a sign at the outermost
+/// level stands at column 0, the first term at column `lead`.
+pub(super) fn lines(math: &Math, width: usize, lead: usize) -> Vec<String> {
+    let mut filler = Filler::new(width, lead);
+    filler.sum(math);
+    filler.finish()
+}
+
+/// Words or formulas separated by `between`, broken between them.
+pub(super) fn words(items: &[String], between: &str, width: usize) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for item in items {
+        match lines.last_mut() {
+            Some(line) if columns(line) + columns(between) + columns(item) <= width => {
+                line.push_str(between);
+                line.push_str(item);
+            }
+            Some(line) => {
+                line.push_str(between.trim_end());
+                lines.push(item.clone());
+            }
+            None => lines.push(item.clone()),
+        }
+    }
+    for line in &mut lines {
+        line.truncate(line.trim_end().len());
+    }
+    lines
+}
+
+/// Column at which a line inside a parenthesis starts.
+#[derive(Clone, Copy)]
+enum Start {
+    Known(usize),
+    InPending(usize),
+}
+
+struct Filler {
+    width: usize,
+    lines: Vec<String>,
+    line: String,
+    column: usize,
+    empty: bool,
+    pending: String,
+    pending_indent: usize,
+    starts: Vec<Start>,
+}
+
+impl Filler {
+    fn new(width: usize, lead: usize) -> Self {
+        Self {
+            width,
+            lines: Vec::new(),
+            line: String::new(),
+            column: lead,
+            empty: true,
+            pending: String::new(),
+            pending_indent: 0,
+            starts: Vec::new(),
+        }
+    }
+
+    fn sum(&mut self, math: &Math) {
+        for (index, (negative, body)) in math.terms().into_iter().enumerate() {
+            if index > 0 {
+                self.flush();
+            }
+            self.pending.push_str(match (index, negative) {
+                (0, false) => "",
+                (0, true) => "−",
+                (_, false) => " + ",
+                (_, true) => " − ",
+            });
+            self.part(body, Within::Sum);
+        }
+    }
+
+    fn part(&mut self, math: &Math, within: Within) {
+        let grouped = math.is_grouped(within, Bars::Slash);
+        if grouped {
+            self.pending.push('(');
+            self.starts.push(Start::InPending(columns(&self.pending)));
+        }
+        match math {
+            Math::Sum(_) => self.sum(math),
+            Math::Product(factors) => {
+                for (index, factor) in factors.iter().enumerate() {
+                    if index > 0 {
+                        self.pending.push('·');
+                    }
+                    self.part(factor, Within::Product);
+                }
+            }
+            Math::Quotient(above, below) => {
+                self.part(above, Within::Product);
+                self.pending.push('/');
+                self.part(below, Within::Divisor);
+            }
+            other => self.pending.push_str(&READING.spell(other)),
+        }
+        if grouped {
+            self.pending.push(')');
+            self.starts.pop();
+        }
+    }
+
+    /// Puts the pending piece on the line, or on a new one where it does not fit.
+    fn flush(&mut self) {
+        let mut piece = std::mem::take(&mut self.pending);
+        if !self.empty && self.column + columns(&piece) > self.width {
+            let indent = self.pending_indent.min(self.width / 2);
+            self.lines.push(std::mem::take(&mut self.line));
+            self.line = " ".repeat(indent);
+            self.column = indent;
+            let trimmed = piece.trim_start().to_owned();
+            self.settle_starts(indent, columns(&piece) - columns(&trimmed));
+            piece = trimmed;
+        } else {
+            self.settle_starts(self.column, 0);
+        }
+        self.empty = false;
+        self.column += columns(&piece);
+        self.line.push_str(&piece);
+        self.pending_indent = match self.starts.last() {
+            Some(Start::Known(column)) => *column,
+            _ => 0,
+        };
+    }
+
+    fn settle_starts(&mut self, column: usize, dropped: usize) {
+        for start in &mut self.starts {
+            if let Start::InPending(offset) = *start {
+                *start = Start::Known(column + offset - dropped);
+            }
+        }
+    }
+
+    fn finish(mut self) -> Vec<String> {
+        self.flush();
+        self.lines.push(self.line);
+        self.lines
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn sum(names: &[&str]) -> Math {
+        Math::sum(names.iter().map(|name| Math::name(name)))
+    }
+
+    #[test]
+    fn breaks_before_signs() {
+        let math = sum(&["aaaa", "bbbb", "cccc", "dddd"]);
+        assert_eq!(lines(&math, 14, 2), ["aaaa + bbbb", "+ cccc + dddd"]);
+    }
+
+    #[test]
+    fn aligns_inside_an_open_parenthesis() {
+        let inner = sum(&["aaaa", "bbbb", "cccc"]);
+        let math = Math::sum([Math::name("x"), Math::product([Math::name("s"), inner])]);
+        assert_eq!(
+            lines(&math, 18, 2),
+            ["x + s·(aaaa", "         + bbbb", "         + cccc)"]
+        );
+    }
+
+    #[test]
+    fn words_fill_lines() {
+        let items = ["C1", "C2", "C3"].map(str::to_owned);
+        assert_eq!(words(&items, "  ", 6), ["C1  C2", "C3"]);
+    }
+}

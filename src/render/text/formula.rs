@@ -1,0 +1,212 @@
+//! Derived functions as fractions.
+
+use crate::algebra::{Polynomial, Symbol};
+use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
+use crate::render::answer::Answer;
+use crate::render::coefficients::{self, Definition, Manner, NamedForm};
+use crate::render::linear::READING;
+use crate::render::math::{self, Math};
+use crate::render::names::{FrequencyPlace, Names};
+use crate::render::sentence;
+use crate::render::text::Page;
+use crate::render::text::block::{Block, columns};
+use crate::render::text::fill;
+use crate::render::text::order;
+use crate::render::text::paint::Paint;
+
+/// Columns left of everything drawn under a heading.
+const INDENT: usize = 2;
+
+/// One function: heading, formula, its degrees in a line.
+pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page) -> String {
+    let paint = Paint(page.colour);
+    let names = answer.names(FrequencyPlace::First);
+    let mut text = order::heading(answer, result, page);
+    text.push('\n');
+    match &result.formula {
+        Formula::Expanded(formula) => text.push_str(&expanded(&result.name, formula, &names, page)),
+        Formula::Nested(form) => text.push_str(&nested(&result.name, form, &names, page)),
+        Formula::OverBudget(exceeded) => {
+            let sentence = sentence::over_budget(exceeded);
+            text.push_str(&format!("  {}\n", paint.unsure(&sentence)));
+        }
+    }
+    text.push('\n');
+    text.push_str(&footer(result, page));
+    text
+}
+
+/// Degrees, and how the formula was checked.
+fn footer(result: &FunctionReport, page: &Page) -> String {
+    let mut words = vec![order::degrees(result)];
+    if result.checked_points > 0 {
+        let points = sentence::counted(result.checked_points as usize, "point", "points");
+        words.push(format!("agrees with the nodal equations at {points}"));
+    }
+    let mut text = String::new();
+    for line in fill::words(&words, " · ", page.width - INDENT) {
+        text.push_str(&format!("  {}\n", Paint(page.colour).quiet(&line)));
+    }
+    text.push_str(&order::relied_on(&result.relied_on, page));
+    text
+}
+
+fn expanded(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
+    match coefficients::manner(formula) {
+        Manner::InPlace => in_place(name, formula, names, page),
+        Manner::Named => named(name, &coefficients::named(formula, names), page),
+        Manner::Nested => {
+            let (above, below) = coefficients::term_counts(formula);
+            let mut text = named(name, &coefficients::named(formula, names), page);
+            let note = expanded_terms(&above.to_string(), &below.to_string());
+            text.push_str(&format!("\n  {}\n", Paint(page.colour).quiet(&note)));
+            text
+        }
+    }
+}
+
+fn expanded_terms(above: &str, below: &str) -> String {
+    format!(
+        "common symbols are taken out; expanded, these are {} terms over {}",
+        sentence::grouped(above),
+        sentence::grouped(below)
+    )
+}
+
+/// `H(s)  =  `, or `K  =  ` where the function does not depend on s.
+fn left_side(name: &str, depends_on_s: bool) -> String {
+    let argument = if depends_on_s { "(s)" } else { "" };
+    format!("{name}{argument}  =  ")
+}
+
+fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
+    let depends_on_s = formula.numerator.len() > 1 || formula.denominator.len() > 1;
+    let left = left_side(name, depends_on_s);
+    let width = page
+        .width
+        .saturating_sub(INDENT + columns(&left) + 2)
+        .max(20);
+    let above = polynomial_lines(&formula.numerator, names, width);
+    let right = if matches!(formula.denominator.as_slice(), [one] if one.is_one()) {
+        Block::lines(above)
+    } else {
+        let below = polynomial_lines(&formula.denominator, names, width);
+        Block::fraction(&Block::lines(above), &Block::lines(below))
+    };
+    Block::beside(&[Block::text(left), right]).indented(INDENT)
+}
+
+/// On one line where it fits, else one power of s a line, long coefficients broken.
+fn polynomial_lines(coefficients: &[Polynomial], names: &Names<'_>, width: usize) -> Vec<String> {
+    let line = READING.spell(&math::power_series(coefficients, names));
+    if columns(&line) <= width {
+        return vec![line];
+    }
+    let mut lines = Vec::new();
+    for (index, term) in math::power_terms(coefficients, names)
+        .into_iter()
+        .enumerate()
+    {
+        let (sign, body) = match (index, &term) {
+            (0, _) => ("  ", term),
+            (_, Math::Sum(_)) => ("+ ", term),
+            _ => match term.split_sign() {
+                (false, body) => ("+ ", body),
+                (true, body) => ("− ", body),
+            },
+        };
+        push_hanging(&mut lines, sign, "", &body, width);
+    }
+    lines
+}
+
+/// Lines of an expression behind a first prefix and blanks.
+fn push_hanging(lines: &mut Vec<String>, first: &str, rest: &str, body: &Math, width: usize) {
+    let lead = columns(first) - columns(rest);
+    let room = width.saturating_sub(columns(rest)).max(20);
+    for (index, line) in fill::lines(body, room, lead).into_iter().enumerate() {
+        let prefix = if index == 0 { first } else { rest };
+        lines.push(format!("{prefix}{line}"));
+    }
+}
+
+fn named(name: &str, form: &NamedForm, page: &Page) -> String {
+    let mut text = quotient_of_sums(&left_side(name, true), form, page);
+    text.push('\n');
+    text.push_str(&definitions(&form.definitions, page));
+    text
+}
+
+fn quotient_of_sums(left: &str, form: &NamedForm, page: &Page) -> String {
+    let width = page
+        .width
+        .saturating_sub(INDENT + columns(left) + 2)
+        .max(20);
+    let block = |math: &Math| {
+        let line = READING.spell(math);
+        if columns(&line) <= width {
+            return Block::text(line);
+        }
+        let mut lines = Vec::new();
+        push_hanging(&mut lines, "  ", "", math, width);
+        Block::lines(lines)
+    };
+    let above = block(&form.numerator);
+    let right = match &form.denominator {
+        Math::Number(one) if one.is_one() => above,
+        below => Block::fraction(&above, &block(below)),
+    };
+    Block::beside(&[Block::text(left), right]).indented(INDENT)
+}
+
+/// `b1 = …` one below the other, the equals signs in one column.
+fn definitions(list: &[Definition], page: &Page) -> String {
+    let widest = list.iter().map(|it| columns(&it.name)).max().unwrap_or(0);
+    let mut lines = Vec::new();
+    for definition in list {
+        let gap = " ".repeat(widest - columns(&definition.name));
+        let first = format!("  {gap}{} = ", definition.name);
+        let rest = " ".repeat(columns(&first) - 2);
+        push_hanging(&mut lines, &first, &rest, &definition.value, page.width);
+    }
+    lines.iter().map(|line| format!("{line}\n")).collect()
+}
+
+fn nested(name: &str, form: &Nested, names: &Names<'_>, page: &Page) -> String {
+    let shared = form.definitions.iter().map(|(symbol, _)| *symbol);
+    let names = names
+        .clone()
+        .with_shared(shared.zip(form.names.iter().map(String::as_str)));
+    let definition = |(name, value): (&String, &(Symbol, Polynomial))| Definition {
+        name: name.clone(),
+        value: math::by_powers_of_s(&value.1, &names),
+        terms: value.1.len(),
+    };
+    let named_form = NamedForm {
+        numerator: math::by_powers_of_s(&form.numerator, &names),
+        denominator: math::by_powers_of_s(&form.denominator, &names),
+        definitions: form
+            .names
+            .iter()
+            .zip(&form.definitions)
+            .map(definition)
+            .collect(),
+    };
+    let mut text = named(name, &named_form, page);
+    let mut notes = vec![format!(
+        "shared parts are named; expanded, these are {} terms over {}",
+        sentence::grouped(&form.terms.0.to_string()),
+        sentence::grouped(&form.terms.1.to_string())
+    )];
+    if form.common_degree > 0 {
+        notes.push(format!(
+            "a common factor of degree {} in s is not divided out here",
+            form.common_degree
+        ));
+    }
+    text.push('\n');
+    for note in notes {
+        text.push_str(&format!("  {}\n", Paint(page.colour).quiet(&note)));
+    }
+    text
+}
