@@ -1,4 +1,5 @@
 //! Exact answers about a network.
 
 pub mod normal;
+pub mod order;
 pub mod report;

@@ -12,8 +12,12 @@ pub mod element;
 pub mod graph;
 pub mod id;
 pub mod incidence;
+#[cfg(test)]
+pub(crate) mod oracle;
 pub mod question;
 pub mod relation;
+#[cfg(test)]
+pub(crate) mod scatter;
 #[cfg(test)]
 pub(crate) mod sketch;
 pub mod topology;

@@ -192,4 +192,36 @@ impl Sketch {
         });
         self
     }
+
+    /// A conveyor with terminals x, y, z and its return.
+    pub(crate) fn conveyor(mut self, name: &str, at: [&str; 4]) -> Self {
+        let [x, y, z, reference] = at.map(|node| self.node(node));
+        let polarity = self.symbol(name);
+        self.add(
+            name,
+            Kind::Conveyor {
+                x,
+                y,
+                z,
+                reference,
+                polarity,
+            },
+        );
+        self
+    }
+
+    /// The name of a part by its number.
+    pub(crate) fn any(&self, index: usize) -> String {
+        let (_, element) = self.builder.network().elements().nth(index).unwrap();
+        element.name.clone()
+    }
+
+    /// Names of the inductors.
+    pub(crate) fn coils(&self) -> Vec<String> {
+        let parts = self.builder.network().elements();
+        parts
+            .filter(|(_, element)| matches!(element.kind, Kind::Inductor(..)))
+            .map(|(_, element)| element.name.clone())
+            .collect()
+    }
 }

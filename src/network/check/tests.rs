@@ -1,4 +1,6 @@
 use super::*;
+use crate::network::oracle::degrees;
+use crate::network::scatter::{Dice, active, passive};
 use crate::network::sketch::Sketch;
 
 fn errors(sketch: Sketch) -> Vec<String> {
@@ -229,4 +231,39 @@ fn many_faults_are_counted() {
     let found = errors(Sketch::of(&format!("{DIVIDER} {parts}")));
     assert_eq!(found.len(), MESSAGES);
     assert!(found[MESSAGES - 1].ends_with("(and 30 more such places)"));
+}
+
+#[test]
+fn a_passive_network_is_faulty_exactly_where_its_determinant_is_zero() {
+    let mut singular = 0;
+    for seed in 0..1500 {
+        let network = passive(&mut Dice(seed << 20)).finish();
+        let found = faults(&network, &[]);
+        let solvable = degrees(&network, &[], seed).is_some();
+        assert_eq!(found.is_empty(), solvable, "seed {seed}: {found:?}");
+        singular += usize::from(!solvable);
+    }
+    assert!(singular > 300 && singular < 1200, "{singular}");
+}
+
+#[test]
+fn an_active_network_with_a_fault_has_no_solution() {
+    let (mut caught, mut missed, mut sound) = (0, 0, 0);
+    for seed in 0..4000 {
+        let network = active(&mut Dice(seed << 20)).finish();
+        let found = faults(&network, &[]);
+        match (found.is_empty(), degrees(&network, &[], seed)) {
+            (false, Some(_)) => panic!(
+                "seed {seed}: {found:?} {:?}",
+                network.elements().collect::<Vec<_>>()
+            ),
+            (false, None) => caught += 1,
+            (true, None) => missed += 1,
+            (true, Some(_)) => sound += 1,
+        }
+    }
+    assert!(
+        caught > 10 * missed && sound > 500,
+        "{caught} caught, {missed} missed, {sound} sound"
+    );
 }
