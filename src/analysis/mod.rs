@@ -3,3 +3,4 @@
 pub mod normal;
 pub mod order;
 pub mod report;
+pub mod singular;

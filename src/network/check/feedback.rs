@@ -1,38 +1,38 @@
 //! Ideal amplifiers whose output has no path back to their inputs.
 //!
-//! Nodes that two-way parts join fall into classes; sources of fixed voltage count as the
-//! reference. A spanning tree has in each class as many edges as the class has nodes, in the
-//! current graph and in the voltage graph alike. So the one-way parts that a term of the determinant
-//! uses from one class to another make up closed circuits; an ideal amplifier is used in every
-//! term, and one that lies on no circuit makes the determinant zero.
+//! Take the current edges and voltage edges of all parts as one graph, sources of fixed voltage
+//! contracted, and its blocks. A spanning tree has in each block one edge less than the block has
+//! nodes, in the current graph and in the voltage graph alike. So the parts that a term of the
+//! determinant uses with a voltage edge in one block and a current edge in another make up closed
+//! circuits of blocks; an ideal amplifier is used in every term, and one that lies on no circuit
+//! makes the determinant zero.
 
 use std::collections::BTreeMap;
 
 use petgraph::algo::kosaraju_scc;
 use petgraph::graph::{DiGraph, NodeIndex};
-use petgraph::unionfind::UnionFind;
 
 use super::naming::{list, node_list, part_name};
 use super::{Wiring, few, number};
 use crate::diagnostic::Diagnostic;
+use crate::network::blocks::blocks;
 use crate::network::element::{Element, Kind, Port, Sense};
 use crate::network::graph::Network;
 use crate::network::id::{ElementId, NodeId};
-use crate::network::incidence::{Components, components};
-use crate::network::topology::Edges;
+use crate::network::incidence::{Components, Ends, components};
 
 /// One message for each ideal amplifier or nullor without feedback.
 pub(super) fn faults(wiring: &Wiring<'_>) -> Vec<Diagnostic> {
     if !wiring.parts.iter().any(|(_, element)| element.is_nullor()) {
         return Vec::new();
     }
-    let classes = Classes::new(wiring);
-    let circuit = classes.circuits(wiring);
+    let map = Blocks::new(wiring);
+    let circuit = map.circuits(wiring);
     let open = wiring.parts.iter().filter(|(_, element)| {
         let one_way = || {
             let (input, output) = nullor(element)?;
-            let sensed = classes.of(input)?;
-            let driven = classes.of(output)?;
+            let sensed = map.of(input)?;
+            let driven = map.of(output)?;
             Some(circuit[sensed] != circuit[driven])
         };
         one_way().unwrap_or(false)
@@ -84,94 +84,84 @@ fn message(wiring: &Wiring<'_>, element: &Element) -> Diagnostic {
     Diagnostic::error(element.place, message).help(help)
 }
 
-struct Classes {
-    /// Joined to the reference by sources of fixed voltage and meters.
-    held: Components,
-    class: Components,
-    /// Sensed parts, each with a sensing node in case its ends are held.
+/// Which block each node pair lies in.
+struct Blocks {
+    /// Nodes joined by sources of fixed voltage and meters are one.
+    merged: Components,
+    /// Node pairs that a part joins, sorted, and the block of each.
+    pairs: Vec<Ends>,
+    block: Vec<usize>,
+    count: usize,
+    /// Sensed parts, each with a block of its own in case its ends are one node.
     sensed: BTreeMap<ElementId, usize>,
 }
 
-impl Classes {
+impl Blocks {
     fn new(wiring: &Wiring<'_>) -> Self {
         let shorts = wiring.parts.iter().filter_map(|(id, element)| {
             let short = element.is_short() && !wiring.sensed.contains(id);
             let port = element.port().filter(|_| short)?;
             Some((number(port.from), number(port.to)))
         });
-        let held = components(wiring.nodes(), shorts);
-        let mut sets = UnionFind::<u32>::new(wiring.nodes());
-        let is_held = |node: NodeId| held.joined((0, number(node)));
-        let mut join = |nodes: &[NodeId]| {
-            let mut free = nodes.iter().filter(|&&node| !is_held(node));
-            if let Some(&first) = free.next() {
-                for &node in free {
-                    sets.union(number(first), number(node));
-                }
-            }
-        };
-        for (_, element) in &wiring.parts {
-            if element.is_current_source() {
-                continue;
-            }
-            let two_way = matches!(
-                element.kind,
-                Kind::Transformer { .. } | Kind::Gyrator { .. }
-            );
-            let mut edges: Edges = element.current_edges();
-            edges.extend(element.voltage_edges());
-            if two_way {
-                let ends: Vec<NodeId> = ends(&edges).collect();
-                join(&ends);
-            } else {
-                edges.iter().for_each(|port| join(&[port.from, port.to]));
+        let merged = components(wiring.nodes(), shorts);
+        let mut pairs: Vec<Ends> = wiring
+            .ends(Element::current_edges)
+            .chain(wiring.ends(Element::voltage_edges))
+            .map(|ends| pair(&merged, ends))
+            .filter(|(a, b)| a != b)
+            .collect();
+        pairs.sort_unstable();
+        pairs.dedup();
+        let found = blocks(merged.count, &pairs);
+        let count = found.len();
+        let mut block = vec![0; pairs.len()];
+        for (index, edges) in found.iter().enumerate() {
+            for &edge in edges {
+                block[edge as usize] = index;
             }
         }
-        for coupling in wiring.network.couplings() {
-            let coils = [coupling.first, coupling.second];
-            let ends: Vec<NodeId> = coils
-                .iter()
-                .filter_map(|&coil| wiring.network.element(coil).port())
-                .flat_map(|port| [port.from, port.to])
-                .collect();
-            join(&ends);
-        }
-        let class = Components::of(sets);
-        let sensed = wiring.sensed.iter().copied().zip(class.count..).collect();
         Self {
-            held,
-            class,
-            sensed,
+            merged,
+            pairs,
+            block,
+            count,
+            sensed: wiring.sensed.iter().copied().zip(count..).collect(),
         }
     }
 
-    /// The class of a part with two ends, or its sensing node.
-    fn of_part(&self, network: &Network, part: ElementId) -> Option<usize> {
-        let class = network.element(part).port().and_then(|port| self.of(port));
-        class.or_else(|| self.sensed.get(&part).copied())
-    }
-
-    /// The class of a node pair; `None` when both its nodes are held.
+    /// The block of a node pair; `None` when it is one node.
     fn of(&self, port: Port) -> Option<usize> {
-        [port.from, port.to]
-            .into_iter()
-            .find(|&node| !self.held.joined((0, number(node))))
-            .map(|node| self.class.label[node.index()] as usize)
+        let ends = pair(&self.merged, (number(port.from), number(port.to)));
+        let at = self.pairs.binary_search(&ends).ok()?;
+        Some(self.block[at])
     }
 
-    /// For each class, the strongly connected group it lies in under the one-way parts.
+    /// The block of a part with two ends, or its own.
+    fn of_part(&self, network: &Network, part: ElementId) -> Option<usize> {
+        let block = network.element(part).port().and_then(|port| self.of(port));
+        block.or_else(|| self.sensed.get(&part).copied())
+    }
+
+    /// For each block, the strongly connected group it lies in.
     fn circuits(&self, wiring: &Wiring<'_>) -> Vec<usize> {
-        let mut graph = DiGraph::<(), ()>::new();
-        let count = self.class.count + self.sensed.len();
+        let count = self.count + self.sensed.len();
+        let mut graph = DiGraph::<(), ()>::with_capacity(count, 0);
         for _ in 0..count {
             graph.add_node(());
         }
-        for &(id, element) in &wiring.parts {
-            for (from, to) in self.one_way(wiring.network, id, element) {
-                if from != to {
-                    graph.add_edge(NodeIndex::new(from), NodeIndex::new(to), ());
-                }
+        let mut act = |sensed: Option<usize>, driven: Option<usize>| {
+            if let Some((from, to)) = sensed.zip(driven).filter(|(from, to)| from != to) {
+                graph.add_edge(NodeIndex::new(from), NodeIndex::new(to), ());
             }
+        };
+        for &(id, element) in &wiring.parts {
+            self.links(wiring.network, id, element, &mut act);
+        }
+        for coupling in wiring.network.couplings() {
+            let coils = [coupling.first, coupling.second];
+            let [first, second] = coils.map(|coil| self.of_part(wiring.network, coil));
+            act(first, second);
+            act(second, first);
         }
         let mut group = vec![0; count];
         for (index, members) in kosaraju_scc(&graph).iter().enumerate() {
@@ -182,39 +172,48 @@ impl Classes {
         group
     }
 
-    /// Pairs (sensed class, driven class) of a part that acts one way.
-    fn one_way(&self, network: &Network, id: ElementId, element: &Element) -> Vec<(usize, usize)> {
+    /// From each block that the part senses to each that it drives.
+    fn links(
+        &self,
+        network: &Network,
+        id: ElementId,
+        element: &Element,
+        act: &mut impl FnMut(Option<usize>, Option<usize>),
+    ) {
         match &element.kind {
-            Kind::Amplifier { input, output, .. } | Kind::Nullor { input, output } => {
-                self.of(*input).zip(self.of(*output)).into_iter().collect()
-            }
-            Kind::Conveyor {
-                x, y, z, reference, ..
-            } => {
-                let sensed = Port { from: *x, to: *y };
-                let driven = Port {
-                    from: *z,
-                    to: *reference,
-                };
-                self.of(sensed).zip(self.of(driven)).into_iter().collect()
-            }
-            Kind::Source(source) => source
-                .controls
-                .iter()
-                .filter(|control| control.acts())
-                .filter_map(|control| {
+            Kind::Source(source) => {
+                let driven = self.of_part(network, id);
+                for control in source.controls.iter().filter(|control| control.acts()) {
                     let sensed = match control.sense {
                         Sense::Voltage(port) => self.of(port),
                         Sense::Current(part) => self.of_part(network, part),
                     };
-                    sensed.zip(self.of_part(network, id))
-                })
-                .collect(),
-            _ => Vec::new(),
+                    act(sensed, driven);
+                }
+            }
+            Kind::Amplifier { .. }
+            | Kind::Nullor { .. }
+            | Kind::Conveyor { .. }
+            | Kind::Transformer { .. }
+            | Kind::Gyrator { .. } => {
+                for sensed in element.voltage_edges() {
+                    for driven in element.current_edges() {
+                        act(self.of(sensed), self.of(driven));
+                    }
+                }
+            }
+            Kind::Resistor(..)
+            | Kind::Conductance(..)
+            | Kind::Capacitor(..)
+            | Kind::Inductor(..)
+            | Kind::Impedance(..)
+            | Kind::Admittance(..)
+            | Kind::Meter(_) => {}
         }
     }
 }
 
-fn ends(edges: &[Port]) -> impl Iterator<Item = NodeId> {
-    edges.iter().flat_map(|port| [port.from, port.to])
+fn pair(merged: &Components, (a, b): Ends) -> Ends {
+    let (a, b) = (merged.label[a as usize], merged.label[b as usize]);
+    (a.min(b), a.max(b))
 }
