@@ -99,7 +99,7 @@ fn define(name: String, value: &Polynomial, nested: bool, names: &Names<'_>) -> 
         value: if nested {
             nest::nested(value, names)
         } else {
-            math::polynomial(value, names)
+            math::for_reading(value, names)
         },
         terms: value.len(),
     }

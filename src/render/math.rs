@@ -12,6 +12,7 @@ use smallvec::SmallVec;
 
 use crate::algebra::{Integer, Monomial, Polynomial, Symbol};
 use crate::render::names::Names;
+use crate::render::nest::nested;
 
 /// An expression to be written.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -292,11 +293,39 @@ fn with_power(coefficient: &Polynomial, power: u32, names: &Names<'_>) -> Math {
         let frequency = Monomial::power(Symbol::S, power);
         return polynomial(&coefficient.mul_monomial(&frequency), names);
     }
-    if power == 0 {
-        return polynomial(coefficient, names);
-    }
     let frequency = Math::name(names.name(Symbol::S)).power(power);
-    Math::product([frequency, polynomial(coefficient, names)])
+    Math::product([frequency, for_reading(coefficient, names)])
+}
+
+/// A polynomial without s with the number and the symbols that all its terms share in front, and as a
+/// product where taking out symbols makes it one: `2·R1·(C1 + C2)`, `(R1 + R2)·(C1 + C2)`.
+#[must_use]
+pub fn for_reading(whole: &Polynomial, names: &Names<'_>) -> Math {
+    let shared = Polynomial::monomial(whole.content(), whole.monomial_content());
+    let Some(rest) = whole.div_exact(&shared) else {
+        return polynomial(whole, names);
+    };
+    let sum = polynomial(&rest, names);
+    let rest = match nested(&rest, names) {
+        product @ Math::Product(_) if product.leaves() < sum.leaves() => product,
+        _ => sum,
+    };
+    Math::product([polynomial(&shared, names), rest])
+}
+
+/// A condition `p = 0` with its negative terms brought to the other side: `R1·C1 = R2·C2`.
+#[must_use]
+pub fn equation(condition: &Polynomial, names: &Names<'_>) -> (Math, Math) {
+    let (_, whole) = by_powers_of_s(condition, names).split_sign();
+    let terms = whole.terms();
+    let side = |wanted: bool| {
+        let terms = terms.iter().filter(|(negative, _)| *negative == wanted);
+        Math::sum(terms.map(|(_, body)| (*body).clone()))
+    };
+    match (side(false), side(true)) {
+        (number @ Math::Number(_), other) => (other, number),
+        sides => sides,
+    }
 }
 
 /// N/D, reduced beforehand by whoever made it, each side by powers of s.
@@ -461,7 +490,7 @@ mod tests {
         let names = Names::new(builder.network(), FrequencyPlace::First);
         assert_eq!(
             READING.spell(&by_powers_of_s(&value, &names)),
-            "1 − s·(R1·C1 + R2·C1) + s²·R1·R2·C1²"
+            "1 − s·C1·(R1 + R2) + s²·R1·R2·C1²"
         );
     }
 
@@ -478,6 +507,6 @@ mod tests {
         });
         let names = Names::new(builder.network(), FrequencyPlace::Last);
         let spelled = MACHINE.spell(&crate::render::nest::nested(&value, &names));
-        assert_eq!(spelled, "R1*(C1 + C2) + R2*(C1 + C2)");
+        assert_eq!(spelled, "(R1 + R2)*(C1 + C2)");
     }
 }

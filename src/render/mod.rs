@@ -7,6 +7,7 @@ pub mod answer;
 pub mod coefficients;
 pub mod json;
 pub mod latex;
+pub mod ledger;
 pub mod linear;
 pub mod math;
 pub mod names;

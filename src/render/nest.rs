@@ -18,7 +18,7 @@ pub fn nested(polynomial: &Polynomial, names: &Names<'_>) -> Math {
 }
 
 fn nest(mut terms: Terms, names: &Names<'_>) -> Math {
-    let mut parts = Vec::new();
+    let mut parts: Vec<(Vec<Math>, Math)> = Vec::new();
     while let Some((symbol, exponent)) = most_shared(&terms, names) {
         let divisor = Monomial::power(symbol, exponent);
         let (with, without): (Terms, Terms) = terms
@@ -29,11 +29,23 @@ fn nest(mut terms: Terms, names: &Names<'_>) -> Math {
             .filter_map(|(monomial, coefficient)| Some((monomial.div(&divisor)?, coefficient)))
             .collect();
         let taken = Math::name(names.name(symbol)).power(exponent);
-        parts.push(Math::product([taken, nest(inner, names)]));
+        join(&mut parts, taken, nest(inner, names));
         terms = without;
     }
-    parts.push(math::polynomial(&Polynomial::from_terms(terms), names));
-    Math::sum(parts.into_iter().filter(|part| !is_zero(part)))
+    let rest = math::polynomial(&Polynomial::from_terms(terms), names);
+    let products = parts
+        .into_iter()
+        .map(|(taken, inner)| Math::product([Math::sum(taken), inner]));
+    let parts = products.chain([rest]);
+    Math::sum(parts.filter(|part| !is_zero(part)))
+}
+
+/// Puts what was taken out beside the others that leave the same: `(R1 + R2)·(C1 + C2)`.
+fn join(parts: &mut Vec<(Vec<Math>, Math)>, taken: Math, inner: Math) {
+    match parts.iter_mut().find(|(_, other)| *other == inner) {
+        Some((list, _)) => list.push(taken),
+        None => parts.push((vec![taken], inner)),
+    }
 }
 
 /// The symbol that stands in most terms, at least two, and its least exponent there.

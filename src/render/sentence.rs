@@ -1,12 +1,8 @@
 //! Words and short sentences that all writers share.
 
-use crate::algebra::Polynomial;
 use crate::analysis::report::{Hides, Stored, Verdict};
 use crate::budget::Exceeded;
 use crate::network::CancellationClass;
-use crate::render::linear::READING;
-use crate::render::math::{self, Math};
-use crate::render::names::Names;
 
 /// `no`, `yes`, `not decided`.
 #[must_use]
@@ -110,24 +106,12 @@ fn follows(before: &str, name: &str) -> bool {
     stem == next_stem && number.is_some() && number.and_then(|it| it.checked_add(1)) == next
 }
 
-/// A condition `p = 0` with its negative terms brought to the other side: `R1·C1 = R2·C2`.
-#[must_use]
-pub fn equation(condition: &Polynomial, names: &Names<'_>) -> String {
-    let whole = math::by_powers_of_s(condition, names);
-    let terms = whole.terms();
-    let side = |wanted: bool| {
-        let terms = terms.iter().filter(|(negative, _)| *negative == wanted);
-        READING.spell(&Math::sum(terms.map(|(_, body)| (*body).clone())))
-    };
-    format!("{} = {}", side(false), side(true))
-}
-
 /// Digits in groups of three with blanks: `12 345`.
 #[must_use]
 pub fn grouped(digits: &str) -> String {
     let mut text = String::new();
     for (index, digit) in digits.chars().enumerate() {
-        if index > 0 && (digits.len() - index) % 3 == 0 {
+        if index > 0 && (digits.len() - index).is_multiple_of(3) {
             text.push(' ');
         }
         text.push(digit);

@@ -3,9 +3,9 @@
 mod audit;
 mod block;
 mod claims;
+mod columns;
 mod fill;
 mod formula;
-mod ledger;
 mod order;
 mod paint;
 
@@ -15,7 +15,7 @@ use paint::Paint;
 /// How the text is drawn.
 #[derive(Clone, Copy, Debug)]
 pub struct Page {
-    /// Columns, at least 40.
+    /// Columns, at least 60.
     pub width: usize,
     /// Whether colour codes may be used.
     pub colour: bool,
@@ -34,7 +34,7 @@ impl Default for Page {
 #[must_use]
 pub fn answer(answer: &Answer<'_>, page: &Page) -> String {
     let page = Page {
-        width: page.width.max(40),
+        width: page.width.max(60),
         ..*page
     };
     let paint = Paint(page.colour);

@@ -2,12 +2,14 @@
 
 use crate::analysis::report::{Cancellation, FunctionReport, Hides};
 use crate::render::answer::Answer;
+use crate::render::ledger::{self, Evidence};
 use crate::render::math;
 use crate::render::names::FrequencyPlace;
 use crate::render::sentence;
 use crate::render::text::Page;
+use crate::render::text::block::columns;
+use crate::render::text::columns::evidence_lines;
 use crate::render::text::fill;
-use crate::render::text::order::cause;
 use crate::render::text::paint::Paint;
 
 /// The cancellations of one function; empty for functions of functions.
@@ -37,27 +39,32 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
 }
 
 fn cancellation(answer: &Answer<'_>, it: &Cancellation, page: &Page) -> String {
+    const COLUMN: usize = 17;
     let names = answer.names(FrequencyPlace::First);
     let factor = math::by_powers_of_s(&it.factor, &names).power(it.multiplicity);
-    let mut text = format!(
-        "  {}\n",
-        Paint(page.colour).strong(sentence::class(it.class))
-    );
-    for (index, line) in fill::lines(&factor, page.width - 4, 2).iter().enumerate() {
-        let blank = if index == 0 { "    " } else { "  " };
-        text.push_str(&format!("{blank}{line}\n"));
+    let mut text = format!("  {}", sentence::class(it.class));
+    text.push_str(&" ".repeat(COLUMN - columns(&text)));
+    for (index, line) in fill::lines(&factor, page.width - COLUMN, 0)
+        .iter()
+        .enumerate()
+    {
+        let blank = if index == 0 { 0 } else { COLUMN };
+        text.push_str(&format!("{}{line}\n", " ".repeat(blank)));
     }
-    let mut clauses = vec![cause(answer, it)];
+    let mut clauses = ledger::cause(answer, it);
     if let Some(hides) = it.hides {
-        clauses.push(hidden_side(hides, it.degree * it.multiplicity));
+        let modes = it.degree * it.multiplicity;
+        clauses.push(Evidence::Clause(hidden_side(hides, modes)));
     }
     if !it.factored {
-        clauses.push("a product that was not split into its factors".to_owned());
+        clauses.push(Evidence::clause(
+            "a product that was not split into its factors",
+        ));
     }
     for clause in clauses {
-        let words: Vec<String> = clause.split(' ').map(str::to_owned).collect();
-        for line in fill::words(&words, " ", page.width - 4) {
-            text.push_str(&format!("    {}\n", Paint(page.colour).quiet(&line)));
+        for line in evidence_lines(&clause, page.width - COLUMN) {
+            let line = Paint(page.colour).quiet(&line);
+            text.push_str(&format!("{}{line}\n", " ".repeat(COLUMN)));
         }
     }
     text

@@ -2,7 +2,8 @@
 
 use crate::analysis::report::{ClaimReport, Finding, Verdict};
 use crate::render::answer::Answer;
-use crate::render::math;
+use crate::render::linear::READING;
+use crate::render::math::{self, Math};
 use crate::render::names::FrequencyPlace;
 use crate::render::text::Page;
 use crate::render::text::block::{Block, columns};
@@ -70,13 +71,20 @@ fn finding(answer: &Answer<'_>, it: &Finding, widest: usize, page: &Page) -> Str
     }
     if let Some((above, below)) = &it.formula {
         let names = answer.names(FrequencyPlace::First);
-        let math = math::ratio(above, below, &names);
-        let whole = Block::math(&math);
-        if whole.width() <= room {
-            blocks.push(whole);
-        } else {
-            blocks.push(Block::lines(fill::lines(&math, room, 0)));
-        }
+        blocks.push(formula(&math::ratio(above, below, &names), room));
     }
     Block::beside(&blocks).indented(INDENT)
+}
+
+/// On one line where it fits, else with a bar, else broken.
+fn formula(math: &Math, room: usize) -> Block {
+    let line = READING.spell(math);
+    if columns(&line) <= room {
+        return Block::text(line);
+    }
+    let whole = Block::math(math);
+    if whole.width() <= room {
+        return whole;
+    }
+    Block::lines(fill::lines(math, room, 0))
 }

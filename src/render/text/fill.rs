@@ -90,14 +90,7 @@ impl Filler {
         }
         match math {
             Math::Sum(_) => self.sum(math),
-            Math::Product(factors) => {
-                for (index, factor) in factors.iter().enumerate() {
-                    if index > 0 {
-                        self.pending.push('·');
-                    }
-                    self.part(factor, Within::Product);
-                }
-            }
+            Math::Product(factors) => self.product(factors),
             Math::Quotient(above, below) => {
                 self.part(above, Within::Product);
                 self.pending.push('/');
@@ -111,14 +104,41 @@ impl Filler {
         }
     }
 
+    fn product(&mut self, factors: &[Math]) {
+        for (index, factor) in factors.iter().enumerate() {
+            if index > 0 {
+                self.pending.push('·');
+            }
+            if index > 0 && self.fits_below_only(factor) {
+                self.flush();
+                self.new_line(self.pending_indent + 2);
+            }
+            self.part(factor, Within::Product);
+        }
+    }
+
+    /// Whether a sum in parentheses would be broken here but not on a line of its own.
+    fn fits_below_only(&self, factor: &Math) -> bool {
+        if !matches!(factor, Math::Sum(_)) {
+            return false;
+        }
+        let wide = columns(&READING.spell_within(factor, Within::Product));
+        let here = self.column + columns(&self.pending) + wide;
+        here > self.width && self.pending_indent + 2 + wide <= self.width
+    }
+
+    fn new_line(&mut self, indent: usize) {
+        self.lines.push(std::mem::take(&mut self.line));
+        self.line = " ".repeat(indent);
+        self.column = indent;
+    }
+
     /// Puts the pending piece on the line, or on a new one where it does not fit.
     fn flush(&mut self) {
         let mut piece = std::mem::take(&mut self.pending);
         if !self.empty && self.column + columns(&piece) > self.width {
             let indent = self.pending_indent.min(self.width / 2);
-            self.lines.push(std::mem::take(&mut self.line));
-            self.line = " ".repeat(indent);
-            self.column = indent;
+            self.new_line(indent);
             let trimmed = piece.trim_start().to_owned();
             self.settle_starts(indent, columns(&piece) - columns(&trimmed));
             piece = trimmed;

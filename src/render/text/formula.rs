@@ -4,6 +4,7 @@ use crate::algebra::{Polynomial, Symbol};
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
 use crate::render::answer::Answer;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
+use crate::render::ledger;
 use crate::render::linear::READING;
 use crate::render::math::{self, Math};
 use crate::render::names::{FrequencyPlace, Names};
@@ -38,7 +39,7 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
 
 /// Degrees, and how the formula was checked.
 fn footer(result: &FunctionReport, page: &Page) -> String {
-    let mut words = vec![order::degrees(result)];
+    let mut words = vec![ledger::degrees(result)];
     if result.checked_points > 0 {
         let points = sentence::counted(result.checked_points as usize, "point", "points");
         words.push(format!("agrees with the nodal equations at {points}"));
@@ -58,19 +59,22 @@ fn expanded(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
         Manner::Nested => {
             let (above, below) = coefficients::term_counts(formula);
             let mut text = named(name, &coefficients::named(formula, names), page);
-            let note = expanded_terms(&above.to_string(), &below.to_string());
-            text.push_str(&format!("\n  {}\n", Paint(page.colour).quiet(&note)));
+            let terms = expanded_terms(&above.to_string(), &below.to_string());
+            let note = format!("common symbols are taken out; {terms}");
+            text.push('\n');
+            text.push_str(&remark(&note, page));
             text
         }
     }
 }
 
+/// How long a fraction would be.
 fn expanded_terms(above: &str, below: &str) -> String {
-    format!(
-        "common symbols are taken out; expanded, these are {} terms over {}",
-        sentence::grouped(above),
-        sentence::grouped(below)
-    )
+    let counted = |digits: &str| {
+        let noun = if digits == "1" { "term" } else { "terms" };
+        format!("{} {noun}", sentence::grouped(digits))
+    };
+    format!("expanded: {} over {}", counted(above), counted(below))
 }
 
 /// `H(s)  =  `, or `K  =  ` where the function does not depend on s.
@@ -193,11 +197,8 @@ fn nested(name: &str, form: &Nested, names: &Names<'_>, page: &Page) -> String {
             .collect(),
     };
     let mut text = named(name, &named_form, page);
-    let mut notes = vec![format!(
-        "shared parts are named; expanded, these are {} terms over {}",
-        sentence::grouped(&form.terms.0.to_string()),
-        sentence::grouped(&form.terms.1.to_string())
-    )];
+    let terms = expanded_terms(&form.terms.0.to_string(), &form.terms.1.to_string());
+    let mut notes = vec![format!("shared parts are named; {terms}")];
     if form.common_degree > 0 {
         notes.push(format!(
             "a common factor of degree {} in s is not divided out here",
@@ -206,7 +207,15 @@ fn nested(name: &str, form: &Nested, names: &Names<'_>, page: &Page) -> String {
     }
     text.push('\n');
     for note in notes {
-        text.push_str(&format!("  {}\n", Paint(page.colour).quiet(&note)));
+        text.push_str(&remark(&note, page));
     }
     text
+}
+
+/// A sentence below a formula.
+fn remark(sentence: &str, page: &Page) -> String {
+    let words: Vec<String> = sentence.split(' ').map(str::to_owned).collect();
+    let lines = fill::words(&words, " ", page.width - INDENT);
+    let lines = lines.iter().map(|line| Paint(page.colour).quiet(line));
+    lines.map(|line| format!("  {line}\n")).collect()
 }

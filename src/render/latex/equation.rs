@@ -1,0 +1,107 @@
+//! Derived functions as displayed equations.
+
+use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
+use crate::render::answer::Answer;
+use crate::render::coefficients::{self, Definition, Manner, NamedForm};
+use crate::render::latex::escape::{escape, name};
+use crate::render::latex::spell::{LINE, lines, spell, width};
+use crate::render::math::{self, Math};
+use crate::render::names::{FrequencyPlace, Names};
+use crate::render::sentence;
+
+/// The equation of one function, or the sentence why there is none.
+pub(super) fn function(answer: &Answer<'_>, result: &FunctionReport) -> String {
+    let names = answer.names(FrequencyPlace::First);
+    match &result.formula {
+        Formula::Expanded(formula) => expanded(&result.name, formula, &names),
+        Formula::Nested(form) => nested(&result.name, form, &names),
+        Formula::OverBudget(exceeded) => format!("{}\n", escape(&sentence::over_budget(exceeded))),
+    }
+}
+
+fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
+    if coefficients::manner(formula) != Manner::InPlace {
+        return with_definitions(function, &coefficients::named(formula, names));
+    }
+    let above = math::power_series(&formula.numerator, names);
+    let below = math::power_series(&formula.denominator, names);
+    let left = left_side(function, formula);
+    let room = LINE - 60;
+    if width(&above) <= room && width(&below) <= room {
+        let right = spell(&Math::quotient(above, below));
+        return format!("\\begin{{equation*}}\n  {left} = {right}\n\\end{{equation*}}\n");
+    }
+    let definitions = [("N", above), ("D", below)].map(|(name, value)| Side {
+        left: format!("{name}(s)"),
+        value,
+    });
+    aligned(&format!("{left} &= \\frac{{N(s)}}{{D(s)}}"), &definitions)
+}
+
+fn left_side(function: &str, formula: &Expanded) -> String {
+    let depends_on_s = formula.numerator.len() > 1 || formula.denominator.len() > 1;
+    let argument = if depends_on_s { "(s)" } else { "" };
+    format!("{}{argument}", name(function))
+}
+
+/// One equation of an aligned group.
+struct Side {
+    left: String,
+    value: Math,
+}
+
+fn with_definitions(function: &str, form: &NamedForm) -> String {
+    let quotient = Math::quotient(form.numerator.clone(), form.denominator.clone());
+    let first = format!("{}(s) &= {}", name(function), spell(&quotient));
+    let sides: Vec<Side> = form.definitions.iter().map(definition).collect();
+    aligned(&first, &sides)
+}
+
+fn definition(definition: &Definition) -> Side {
+    Side {
+        left: name(&definition.name),
+        value: definition.value.clone(),
+    }
+}
+
+/// A first line and one equation for each definition, long ones broken.
+fn aligned(first: &str, sides: &[Side]) -> String {
+    let mut rows = vec![format!("  {first}")];
+    for side in sides {
+        for (index, line) in lines(&side.value, 50).into_iter().enumerate() {
+            rows.push(match index {
+                0 => format!("  {} &= {line}", side.left),
+                _ => format!("  &{line}"),
+            });
+        }
+    }
+    format!(
+        "\\begin{{align*}}\n{}\n\\end{{align*}}\n",
+        rows.join(" \\\\\n")
+    )
+}
+
+fn nested(function: &str, form: &Nested, names: &Names<'_>) -> String {
+    let shared = form.definitions.iter().map(|(symbol, _)| *symbol);
+    let names = names
+        .clone()
+        .with_shared(shared.zip(form.names.iter().map(String::as_str)));
+    let mut sides: Vec<Side> = [("N", &form.numerator), ("D", &form.denominator)]
+        .map(|(name, value)| Side {
+            left: format!("{name}(s)"),
+            value: math::by_powers_of_s(value, &names),
+        })
+        .into();
+    let definitions = form.names.iter().zip(&form.definitions);
+    sides.extend(definitions.map(|(own, (_, value))| Side {
+        left: name(own),
+        value: math::by_powers_of_s(value, &names),
+    }));
+    let first = format!("{}(s) &= \\frac{{N(s)}}{{D(s)}}", name(function));
+    let mut text = aligned(&first, &sides);
+    text.push_str(&format!(
+        "Expanded, these are {} terms over {}.\n",
+        form.terms.0, form.terms.1
+    ));
+    text
+}
