@@ -1,32 +1,237 @@
-//! A question as a quotient of determinants, and its value at points modulo a prime.
+//! A question as a quotient of determinants, evaluated over any layer of values.
 
 use std::collections::BTreeSet;
+use std::convert::Infallible;
 
 use crate::algebra::univariate::Univariate;
-use crate::algebra::{Polynomial, PrimeField, Symbol};
-use crate::analysis::determinant::{Determinant, Singular};
+use crate::algebra::{Polynomial, PolynomialRing, PrimeField, Ring, UnivariateRing};
+use crate::analysis::contraction::Singular;
+use crate::analysis::determinant::{Determinant, Values};
 use crate::analysis::point::{Choice, Point};
-use crate::analysis::setup::{Insertion, Scale, Setup};
+use crate::analysis::setup::{Frame, Insertion, Response};
 use crate::budget::{Budget, Exceeded};
-use crate::network::{Ask, Network, Question, RelationId};
+use crate::network::{Ask, ElementId, Network, RelationId};
 
 /// Numerator and denominator of a question before anything cancels.
 pub(crate) struct Pairing {
     upper: Side,
     lower: Side,
+    /// Order of the network the question is asked in is the degree of the lower determinant.
+    field: PrimeField,
 }
 
-/// A signed sum of determinants times a polynomial.
+/// A difference of determinants times a polynomial. A determinant that is zero whatever the values is
+/// `None`.
 struct Side {
-    terms: Vec<(bool, Determinant)>,
+    plus: Option<Determinant>,
+    minus: Option<Determinant>,
     factor: Polynomial,
 }
 
 /// N and D at a point, as polynomials in s modulo the prime.
+#[derive(Clone, Debug)]
 pub(crate) struct Sample {
     /// Numerator.
     pub(crate) numerator: Univariate,
     /// Denominator.
     pub(crate) denominator: Univariate,
+    /// The lower determinant alone.
+    pub(crate) network: Univariate,
 }
 
+/// The determinants of a question, or the contradiction that makes the lower one vanish.
+pub(crate) enum Paired {
+    /// Both sides.
+    Pairing(Box<Pairing>),
+    /// The network of the question has no unique solution.
+    Singular(Singular),
+}
+
+impl Pairing {
+    /// The determinants of a question that is asked of the network itself.
+    pub(crate) fn new(
+        network: &Network,
+        ask: &Ask,
+        without: &[ElementId],
+        budget: &Budget,
+    ) -> Result<Option<Paired>, Exceeded> {
+        let Some(frame) = Frame::of(ask, without) else {
+            return Ok(None);
+        };
+        let build = |insertion: &Insertion| Determinant::build(network, &frame, insertion, budget);
+        let respond = |combination| {
+            let response = Response::new(combination);
+            let denominator = response.denominator.clone();
+            let built = build(&Insertion::Response(response))?;
+            Ok::<_, Exceeded>((built, denominator))
+        };
+        let one = Polynomial::one;
+        let (upper, lower) = match ask {
+            Ask::Transfer { response, .. } => {
+                let (upper, denominator) = respond(response)?;
+                (
+                    Side::of(upper.ok(), one()),
+                    (build(&Insertion::None)?, denominator),
+                )
+            }
+            Ask::Ratio { upper, lower, .. } => {
+                let (above, above_denominator) = respond(upper)?;
+                let (below, below_denominator) = respond(lower)?;
+                (
+                    Side::of(above.ok(), below_denominator),
+                    (below, above_denominator),
+                )
+            }
+            Ask::Impedance(port) => (
+                Side::of(build(&Insertion::Short(*port))?.ok(), one()),
+                (build(&Insertion::None)?, one()),
+            ),
+            Ask::Admittance(port) => (
+                Side::of(build(&Insertion::None)?.ok(), one()),
+                (build(&Insertion::Short(*port))?, one()),
+            ),
+            Ask::ReturnRatio(parts) => {
+                let quiet: BTreeSet<ElementId> = parts.iter().copied().collect();
+                let still = build(&Insertion::Quiet(quiet))?;
+                let mut upper = Side::of(build(&Insertion::None)?.ok(), one());
+                upper.minus = still.clone().ok();
+                (upper, (still, one()))
+            }
+            Ask::Function(_) | Ask::Limit { .. } | Ask::FirstOrder { .. } => return Ok(None),
+        };
+        let (built, factor) = lower;
+        Ok(Some(match built {
+            Ok(determinant) => Paired::Pairing(Box::new(Self {
+                upper,
+                lower: Side::of(Some(determinant), factor),
+                field: PrimeField::default_prime(),
+            })),
+            Err(singular) => Paired::Singular(singular),
+        }))
+    }
+
+    /// The network alone: its determinant over 1.
+    pub(crate) fn network(
+        network: &Network,
+        without: &[ElementId],
+        budget: &Budget,
+    ) -> Result<Paired, Exceeded> {
+        let frame = Frame::without(without);
+        let built = Determinant::build(network, &frame, &Insertion::None, budget)?;
+        Ok(match built {
+            Ok(determinant) => Paired::Pairing(Box::new(Self {
+                upper: Side::of(None, Polynomial::one()),
+                lower: Side::of(Some(determinant), Polynomial::one()),
+                field: PrimeField::default_prime(),
+            })),
+            Err(singular) => Paired::Singular(singular),
+        })
+    }
+
+    /// The field of all samples.
+    pub(crate) fn field(&self) -> &PrimeField {
+        &self.field
+    }
+
+    /// N and D at a point; `None` at an unlucky one.
+    pub(crate) fn sample(&self, network: &Network, choice: &Choice<'_>) -> Option<Sample> {
+        let point = Point::new(network, &self.field, choice)?;
+        Some(self.at(&point))
+    }
+
+    /// N and D at a point.
+    pub(crate) fn at(&self, point: &Point) -> Sample {
+        let ring = UnivariateRing { field: self.field };
+        let never = |result: Result<Univariate, Infallible>| match result {
+            Ok(value) => value,
+            Err(never) => match never {},
+        };
+        let network = match &self.lower.plus {
+            Some(determinant) => never(determinant.value(&ring, point)),
+            None => Univariate::zero(),
+        };
+        let (factor, below) = match Values::<UnivariateRing>::polynomial(point, &self.lower.factor)
+        {
+            Ok(pair) => pair,
+            Err(never) => match never {},
+        };
+        let upper = never(self.upper.value(&ring, point));
+        Sample {
+            numerator: upper.mul(&below, &self.field),
+            denominator: network.mul(&factor, &self.field),
+            network,
+        }
+    }
+
+    /// Some sample at the given relations, at the first lucky seed from `seed` on.
+    pub(crate) fn lucky(
+        &self,
+        network: &Network,
+        seed: u64,
+        shift: u64,
+        released: &dyn Fn(RelationId) -> bool,
+    ) -> Option<Sample> {
+        (seed..seed + 64).find_map(|seed| {
+            let choice = Choice {
+                seed,
+                shift,
+                released,
+                salt: None,
+            };
+            self.sample(network, &choice)
+        })
+    }
+
+    /// N and D as polynomials.
+    pub(crate) fn expand(
+        &self,
+        ring: &PolynomialRing<'_>,
+        values: &dyn for<'b> Values<PolynomialRing<'b>>,
+    ) -> Result<(Polynomial, Polynomial), Exceeded> {
+        let numerator = self.upper.value(ring, values)?;
+        let denominator = self.lower.value(ring, values)?;
+        Ok((numerator, denominator))
+    }
+
+    /// Terms of N and D before like terms are gathered.
+    pub(crate) fn term_counts(&self) -> (crate::algebra::Integer, crate::algebra::Integer) {
+        let count = |side: &Side| {
+            [&side.plus, &side.minus]
+                .into_iter()
+                .flatten()
+                .fold(crate::algebra::Integer::zero(), |sum, determinant| {
+                    sum + determinant.term_count()
+                })
+        };
+        (count(&self.upper), count(&self.lower))
+    }
+
+    /// The determinants of both sides: (plus, minus, factor).
+    pub(crate) fn sides(&self) -> [(Option<&Determinant>, Option<&Determinant>, &Polynomial); 2] {
+        [&self.upper, &self.lower]
+            .map(|side| (side.plus.as_ref(), side.minus.as_ref(), &side.factor))
+    }
+}
+
+impl Side {
+    fn of(plus: Option<Determinant>, factor: Polynomial) -> Self {
+        Self {
+            plus,
+            minus: None,
+            factor,
+        }
+    }
+
+    fn value<R: Ring>(&self, ring: &R, values: &dyn Values<R>) -> Result<R::Element, R::Error> {
+        let one = |side: &Option<Determinant>| match side {
+            Some(determinant) => determinant.value(ring, values),
+            None => Ok(ring.zero()),
+        };
+        let minus = ring.neg(&one(&self.minus)?);
+        let sum = ring.add(&one(&self.plus)?, &minus)?;
+        if self.factor.is_one() {
+            return Ok(sum);
+        }
+        ring.mul(&sum, &values.polynomial(&self.factor)?.0)
+    }
+}

@@ -1,10 +1,13 @@
 //! A random point modulo a prime: a value in s for every value symbol, with some relations kept and
 //! others released.
 
+use std::convert::Infallible;
+
 use crate::algebra::univariate::Univariate;
-use crate::algebra::{Fraction, Polynomial, PrimeField, Symbol};
+use crate::algebra::{Fraction, Polynomial, PrimeField, Symbol, UnivariateRing};
+use crate::analysis::determinant::Values;
 use crate::analysis::relations::resolution_order;
-use crate::network::{Network, RelationId};
+use crate::network::{Network, RelationId, Strength, Value};
 
 /// Which point.
 pub(crate) struct Choice<'a> {
@@ -15,6 +18,19 @@ pub(crate) struct Choice<'a> {
     pub(crate) shift: u64,
     /// Whether a relation is released.
     pub(crate) released: &'a dyn Fn(RelationId) -> bool,
+    /// One independent quantity that gets another value than the seed gives it.
+    pub(crate) salt: Option<Quantity>,
+}
+
+/// An independent quantity of a point.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub(crate) enum Quantity {
+    /// A symbol that no relation sets.
+    Free(Symbol),
+    /// A symbol whose relation is released.
+    Released(Symbol),
+    /// The copy of a parameter inside a released relation that keeps its form.
+    Copy(RelationId, Symbol),
 }
 
 /// Quotient of two polynomials in s modulo the prime.
@@ -30,6 +46,10 @@ pub(crate) struct Quotient {
 pub(crate) struct Point {
     values: Vec<Option<Quotient>>,
     seed: u64,
+    salt: Option<Quantity>,
+    /// Mutual inductances of couplings given by their factor.
+    mutual: Vec<Option<Quotient>>,
+    field: PrimeField,
 }
 
 impl Point {
@@ -41,6 +61,9 @@ impl Point {
         let mut point = Self {
             values: vec![None; network.symbols().len()],
             seed: choice.seed,
+            salt: choice.salt,
+            mutual: Vec::new(),
+            field: *field,
         };
         for id in resolution_order(network) {
             let relation = network.relation(id);
@@ -50,20 +73,77 @@ impl Point {
                 let shift_parameters = released && keeps_form;
                 let mut found = point.fraction(value, field, &|parameter| {
                     if shift_parameters {
-                        offset(field, choice, id.index() as u64 + 1, parameter)
+                        offset(field, choice, Quantity::Copy(id, parameter))
                     } else {
                         0
                     }
                 })?;
                 if released && !keeps_form {
-                    let by = offset(field, choice, 0, *symbol);
+                    let by = offset(field, choice, Quantity::Released(*symbol));
                     let moved = found.denominator.scale(by, field);
                     found.numerator = found.numerator.add(&moved, field);
                 }
                 point.values[symbol.index()] = Some(found);
             }
+            point.share_denominator(&relation.sets, field);
         }
+        point.couple(network)?;
         Some(point)
+    }
+
+    /// M = k·√(L1·L2); `None` where the product is no square modulo the prime.
+    fn couple(&mut self, network: &Network) -> Option<()> {
+        let field = self.field;
+        for coupling in network.couplings() {
+            let Strength::Factor(k) = &coupling.strength else {
+                self.mutual.push(None);
+                continue;
+            };
+            let k = self.of_value(k)?;
+            let coil = |id| self.of_value(network.element(id).value()?);
+            let product = coil(coupling.first)?.times(&coil(coupling.second)?, &field);
+            let root = |polynomial: &Univariate| {
+                // Inductances hold no s.
+                field.square_root(polynomial.coefficients().first().copied().unwrap_or(0))
+            };
+            let square = Quotient {
+                numerator: Univariate::constant(root(
+                    &product.numerator.mul(&product.denominator, &field),
+                )?),
+                denominator: product.denominator,
+            };
+            self.mutual.push(Some(k.times(&square, &field)));
+        }
+        Some(())
+    }
+
+    /// A value of the network at this point.
+    pub(crate) fn of_value(&self, value: &Value) -> Option<Quotient> {
+        match value {
+            Value::Symbol(symbol) => Some(self.value(*symbol, &self.field)),
+            Value::Number(number) => Some(Quotient::constant(self.field.from_rational(number)?)),
+        }
+    }
+
+    /// Brings what one relation sets over one common denominator.
+    fn share_denominator(&mut self, sets: &[(Symbol, Fraction)], field: &PrimeField) {
+        if sets.len() < 2 {
+            return;
+        }
+        let mut common = Univariate::constant(1);
+        for (symbol, _) in sets {
+            let own = self.value(*symbol, field).denominator;
+            let shared = common.gcd(&own, field);
+            common = common.mul(&own.div_rem(&shared, field).0, field);
+        }
+        for (symbol, _) in sets {
+            let own = self.value(*symbol, field);
+            let factor = common.div_rem(&own.denominator, field).0;
+            self.values[symbol.index()] = Some(Quotient {
+                numerator: own.numerator.mul(&factor, field),
+                denominator: common.clone(),
+            });
+        }
     }
 
     /// The value of a symbol.
@@ -74,7 +154,13 @@ impl Point {
         let numerator = if symbol == Symbol::S {
             Univariate::variable()
         } else {
-            Univariate::constant(residue(field, self.seed, 0, symbol))
+            let choice = Choice {
+                seed: self.seed,
+                shift: 0,
+                released: &|_| false,
+                salt: self.salt,
+            };
+            Univariate::constant(salted(field, &choice, Quantity::Free(symbol)))
         };
         Quotient {
             numerator,
@@ -94,11 +180,13 @@ impl Point {
         if lower.numerator.is_zero() {
             return None;
         }
-        Some(Quotient {
-            numerator: upper.numerator.mul(&lower.denominator, field),
-            denominator: upper.denominator.mul(&lower.numerator, field),
-        }
-        .reduced(field))
+        Some(
+            Quotient {
+                numerator: upper.numerator.mul(&lower.denominator, field),
+                denominator: upper.denominator.mul(&lower.numerator, field),
+            }
+            .reduced(field),
+        )
     }
 
     fn polynomial(
@@ -112,7 +200,11 @@ impl Point {
             let mut term = Quotient::constant(field.from_integer(coefficient));
             for (symbol, exponent) in monomial.factors() {
                 let mut value = self.value(symbol, field);
-                let by = if symbol == Symbol::S { 0 } else { shift(symbol) };
+                let by = if symbol == Symbol::S {
+                    0
+                } else {
+                    shift(symbol)
+                };
                 if by != 0 {
                     let moved = value.denominator.scale(by, field);
                     value.numerator = value.numerator.add(&moved, field);
@@ -124,6 +216,28 @@ impl Point {
             sum = sum.plus(&term, field);
         }
         sum
+    }
+}
+
+impl Values<UnivariateRing> for Point {
+    fn symbol(&self, symbol: Symbol) -> Result<(Univariate, Univariate), Infallible> {
+        let value = self.value(symbol, &self.field);
+        Ok((value.numerator, value.denominator))
+    }
+
+    fn mutual(&self, coupling: usize) -> Result<(Univariate, Univariate), Infallible> {
+        let value = self.mutual.get(coupling).cloned().flatten();
+        let value = value.unwrap_or_else(|| Quotient::constant(0));
+        Ok((value.numerator, value.denominator))
+    }
+
+    fn s(&self) -> Univariate {
+        Univariate::variable()
+    }
+
+    fn polynomial(&self, polynomial: &Polynomial) -> Result<(Univariate, Univariate), Infallible> {
+        let value = Self::polynomial(self, polynomial, &self.field, &|_| 0);
+        Ok((value.numerator, value.denominator))
     }
 }
 
@@ -170,11 +284,22 @@ impl Quotient {
     }
 }
 
-fn offset(field: &PrimeField, choice: &Choice<'_>, stream: u64, symbol: Symbol) -> u64 {
-    field.mul(
-        choice.shift,
-        residue(field, choice.seed, stream + 1, symbol),
-    )
+fn offset(field: &PrimeField, choice: &Choice<'_>, quantity: Quantity) -> u64 {
+    field.mul(choice.shift, salted(field, choice, quantity))
+}
+
+/// The random residue of a quantity.
+fn salted(field: &PrimeField, choice: &Choice<'_>, quantity: Quantity) -> u64 {
+    let seed = if choice.salt == Some(quantity) {
+        choice.seed ^ 0x5A17
+    } else {
+        choice.seed
+    };
+    match quantity {
+        Quantity::Free(symbol) => residue(field, seed, 0, symbol),
+        Quantity::Released(symbol) => residue(field, seed, 1, symbol),
+        Quantity::Copy(id, symbol) => residue(field, seed, id.index() as u64 + 2, symbol),
+    }
 }
 
 /// A fixed pseudo-random residue other than zero (SplitMix64).
@@ -189,5 +314,7 @@ pub(crate) fn residue(field: &PrimeField, seed: u64, stream: u64, symbol: Symbol
     word ^= word >> 27;
     word = word.wrapping_mul(0x94D0_49BB_1331_11EB);
     word ^= word >> 31;
-    field.from_integer(&crate::algebra::Integer::from(word >> 1)).max(1)
+    field
+        .from_integer(&crate::algebra::Integer::from(word >> 1))
+        .max(1)
 }

@@ -39,6 +39,26 @@ impl Substitution {
             .unwrap_or_else(|| Fraction::symbol(symbol))
     }
 
+    /// Puts values in for independent symbols, everywhere.
+    pub(crate) fn extend(
+        &mut self,
+        value: &dyn Fn(Symbol) -> Option<Fraction>,
+        symbols: impl Iterator<Item = Symbol>,
+        budget: &Budget,
+    ) -> Result<(), Exceeded> {
+        for found in self.values.values_mut() {
+            if let Some(changed) = found.substitute(value, budget)? {
+                *found = changed;
+            }
+        }
+        for symbol in symbols {
+            if let Some(found) = value(symbol) {
+                self.values.insert(symbol, found);
+            }
+        }
+        Ok(())
+    }
+
     /// A fraction with every relation put in; `None` when its denominator becomes zero.
     pub(crate) fn apply(
         &self,
