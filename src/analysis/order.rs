@@ -71,7 +71,12 @@ pub fn ledger(
     static_sets.truncate(valuation as usize);
 
     NetworkOrder {
-        constraint_evidence: constraints::evidence(&parts, &inductor_cutsets, constraints),
+        constraint_evidence: constraints::evidence(
+            &parts,
+            &capacitor_loops,
+            &inductor_cutsets,
+            constraints,
+        ),
         integrators: valuation - number(static_sets.len()),
         reactive,
         device_states: states.count,

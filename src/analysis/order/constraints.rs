@@ -5,23 +5,23 @@
 //! transformer or tight coupling ties two states into one. What gains and relations do together is
 //! not attributed here; [`released`] tries relations one by one.
 
-use std::collections::BTreeSet;
+mod transformers;
+
+use std::collections::{BTreeMap, BTreeSet};
+use std::rc::Rc;
 
 use super::topology::{PartEdge, Parts, closed, cut_parts, ends};
 use crate::algebra::Rational;
 use crate::analysis::report::ConstraintEvidence;
-use crate::network::blocks::blocks;
 use crate::network::check::{list, part_names};
-use crate::network::incidence::{Ends, components};
+use crate::network::incidence::components;
 use crate::network::topology::sensed_currents;
 use crate::network::{Element, ElementId, Kind, Network, RelationId, Strength, Value};
-
-/// Transformers whose cut-sets are searched.
-const TRIED: usize = 32;
 
 /// At most `constraints` pieces of evidence, each for one state.
 pub(super) fn evidence(
     parts: &Parts<'_>,
+    loops: &[Vec<ElementId>],
     cut_sets: &[Vec<ElementId>],
     constraints: u32,
 ) -> Vec<ConstraintEvidence> {
@@ -32,13 +32,16 @@ pub(super) fn evidence(
         parts,
         sensed: sensed_currents(parts.list.iter().map(|(_, element)| *element)),
         told: BTreeSet::new(),
-        in_cut_sets: cut_sets.iter().flatten().copied().collect(),
+        coupled: coupled(parts.network),
+        in_loops: loops.iter().flatten().copied().collect(),
+        in_cut_sets: BTreeSet::new(),
         found: Vec::new(),
     };
-    search.tight_couplings();
+    search.in_cut_sets = search.with_partners(cut_sets.iter().flatten().copied());
     search.outputs();
     search.equal_inputs();
     search.driven_inductors();
+    search.tight_couplings();
     search.transformed_voltages();
     search.transformed_currents();
     search.found.truncate(constraints as usize);
@@ -70,11 +73,44 @@ pub fn released(
     found
 }
 
+/// Groups of coils that couplings join, by coil.
+fn coupled(network: &Network) -> BTreeMap<ElementId, Rc<[ElementId]>> {
+    let coils: BTreeSet<ElementId> = network
+        .couplings()
+        .iter()
+        .flat_map(|coupling| [coupling.first, coupling.second])
+        .collect();
+    let coils: Vec<ElementId> = coils.into_iter().collect();
+    let number = |coil: ElementId| {
+        let at = coils.binary_search(&coil).unwrap_or_default();
+        super::number(at)
+    };
+    let joins = network.couplings().iter();
+    let joins = joins.map(|coupling| (number(coupling.first), number(coupling.second)));
+    let parted = components(coils.len(), joins);
+    let mut groups = vec![Vec::new(); parted.count];
+    for (coil, label) in coils.iter().zip(&parted.label) {
+        groups[*label as usize].push(*coil);
+    }
+    let groups: Vec<Rc<[ElementId]>> = groups.into_iter().map(Rc::from).collect();
+    let group = |label: &u32| Rc::clone(&groups[*label as usize]);
+    coils
+        .iter()
+        .copied()
+        .zip(parted.label.iter().map(group))
+        .collect()
+}
+
 struct Search<'a> {
     parts: &'a Parts<'a>,
     sensed: BTreeSet<ElementId>,
     /// Capacitors and inductors in evidence found so far.
     told: BTreeSet<ElementId>,
+    /// Groups of coupled coils, by coil.
+    coupled: BTreeMap<ElementId, Rc<[ElementId]>>,
+    in_loops: BTreeSet<ElementId>,
+    /// Coils in cut-sets of the ledger and their partners: a term may use one coil of a group in
+    /// the current graph and another in the voltage graph.
     in_cut_sets: BTreeSet<ElementId>,
     found: Vec<ConstraintEvidence>,
 }
@@ -86,6 +122,26 @@ impl Search<'_> {
 
     fn is_capacitor(&self, id: ElementId) -> bool {
         matches!(self.element(id).kind, Kind::Capacitor(..))
+    }
+
+    fn with_partners(&self, parts: impl Iterator<Item = ElementId>) -> BTreeSet<ElementId> {
+        let mut all = BTreeSet::new();
+        for part in parts {
+            match self.coupled.get(&part) {
+                Some(group) if !all.contains(&part) => all.extend(group.iter().copied()),
+                Some(_) => {}
+                None => {
+                    all.insert(part);
+                }
+            }
+        }
+        all
+    }
+
+    /// Whether nothing told so far speaks of the state of this part.
+    fn is_apart(&self, part: ElementId) -> bool {
+        let known = [&self.told, &self.in_loops, &self.in_cut_sets];
+        known.iter().all(|set| !set.contains(&part))
     }
 
     fn capacitors(&self) -> Vec<PartEdge> {
@@ -107,7 +163,7 @@ impl Search<'_> {
             let coils = [coupling.first, coupling.second];
             let apart = coils.iter().all(|&coil| {
                 let stays = self.parts.has(coil);
-                stays && !self.in_cut_sets.contains(&coil)
+                stays && self.is_apart(coil)
             });
             if tight && apart && sets.union(coils[0].index(), coils[1].index()) {
                 let coils = coils.map(|coil| network.element(coil).name.clone());
@@ -124,12 +180,17 @@ impl Search<'_> {
         }
     }
 
-    /// Loops of capacitors and outputs of fixed voltage.
+    /// Loops of capacitors and outputs of fixed voltage. A sensed capacitor is in series with a
+    /// sensing branch that some terms leave out.
     fn outputs(&mut self) {
         let mut fixed = self.parts.shorts();
         fixed.extend(self.outputs_fixed());
         let holds = |element: &Element| !element.is_short();
-        let found = self.extra_loops(fixed, holds, "sets", "ties");
+        let mut found = self.extra_loops(fixed, holds, "sets", "ties");
+        if !self.sensed.is_empty() {
+            let apart = |part: &ElementId| self.is_apart(*part) && !self.sensed.contains(part);
+            found.retain(|(members, _)| members.iter().all(apart));
+        }
         self.tell(found);
     }
 
@@ -140,7 +201,8 @@ impl Search<'_> {
         })
     }
 
-    /// Loops of capacitors and node pairs that amplifiers hold equal.
+    /// Loops of capacitors and node pairs that amplifiers hold equal. Where outputs have been told
+    /// of, loops that share a capacitor with theirs might speak of the same state.
     fn equal_inputs(&mut self) {
         let mut fixed = self.parts.shorts();
         fixed.extend(
@@ -149,7 +211,9 @@ impl Search<'_> {
         );
         let holds = |element: &Element| !element.is_short();
         let mut found = self.extra_loops(fixed, holds, "holds", "ties");
-        found.retain(|(members, _)| members.iter().all(|part| !self.told.contains(part)));
+        if !self.told.is_empty() {
+            found.retain(|(members, _)| members.iter().all(|&part| self.is_apart(part)));
+        }
         self.tell(found);
     }
 
@@ -230,6 +294,7 @@ impl Search<'_> {
 
     fn tell(&mut self, found: Vec<(Vec<ElementId>, ConstraintEvidence)>) {
         for (members, piece) in found {
+            let members = self.with_partners(members.into_iter());
             self.told.extend(members);
             self.found.push(piece);
         }
@@ -267,118 +332,5 @@ impl Search<'_> {
             found.push((coils, piece));
         }
         self.tell(found);
-    }
-
-    fn transformers(&self) -> Vec<(ElementId, [Ends; 2])> {
-        let windings = |element: &Element| match &element.kind {
-            Kind::Transformer {
-                primary, secondary, ..
-            } => Some([ends(*primary), ends(*secondary)]),
-            _ => None,
-        };
-        let list = self.parts.list.iter();
-        list.filter_map(|(id, element)| Some((*id, windings(element)?)))
-            .collect()
-    }
-
-    /// Transformers with both windings across capacitors and fixed voltages.
-    fn transformed_voltages(&mut self) {
-        let transformers = self.transformers();
-        if transformers.is_empty() {
-            return;
-        }
-        let mut fixed = self.parts.shorts();
-        fixed.retain(|(id, _)| !self.sensed.contains(id));
-        fixed.extend(self.outputs_fixed());
-        fixed.extend(self.capacitors());
-        let all = components(self.parts.nodes(), fixed.iter().map(|(_, ends)| *ends));
-        let closers: Vec<PartEdge> = transformers
-            .iter()
-            .filter(|(_, windings)| windings.iter().all(|&winding| all.joined(winding)))
-            .flat_map(|&(id, windings)| windings.map(|winding| (id, winding)))
-            .collect();
-        let loops = closed(self.parts.nodes(), fixed, closers);
-        let mut found = Vec::new();
-        for pair in loops.chunks_exact(2) {
-            let transformer = pair[0][0];
-            let mut states: Vec<ElementId> = pair
-                .iter()
-                .flatten()
-                .copied()
-                .filter(|&id| self.is_capacitor(id))
-                .collect();
-            states.sort_unstable();
-            states.dedup();
-            if states.is_empty() || states.iter().any(|part| self.told.contains(part)) {
-                continue;
-            }
-            let clause = self.clause(&[transformer], &states, "voltage", "sets", "ties");
-            let piece = self.piece(&states, &[transformer], clause);
-            found.push((states, piece));
-        }
-        self.tell(found);
-    }
-
-    /// Transformers with both windings in series with inductors alone.
-    fn transformed_currents(&mut self) {
-        let transformers = self.transformers();
-        if transformers.is_empty() {
-            return;
-        }
-        let cuts = |element: &Element| {
-            matches!(element.kind, Kind::Inductor(..)) || element.is_current_source()
-        };
-        let (crossing, rest): (Vec<PartEdge>, Vec<PartEdge>) = self
-            .parts
-            .all_edges(|_, element| element.conducting())
-            .into_iter()
-            .partition(|(id, _)| cuts(self.element(*id)));
-        let edges: Vec<Ends> = rest.iter().map(|(_, ends)| *ends).collect();
-        let bridges: BTreeSet<u32> = blocks(self.parts.nodes(), &edges)
-            .into_iter()
-            .filter(|block| block.len() == 1)
-            .map(|block| block[0])
-            .collect();
-        let mut found = Vec::new();
-        for (id, _) in transformers.into_iter().take(TRIED) {
-            let own: Vec<u32> = (0_u32..)
-                .zip(&rest)
-                .filter(|(_, (part, _))| *part == id)
-                .map(|(edge, _)| edge)
-                .collect();
-            if !own.iter().all(|edge| bridges.contains(edge)) {
-                continue;
-            }
-            let mut states: Vec<ElementId> = own
-                .iter()
-                .flat_map(|&edge| self.across(&edges, edge, &crossing))
-                .collect();
-            states.sort_unstable();
-            states.dedup();
-            let known = |part| self.told.contains(part) || self.in_cut_sets.contains(part);
-            if states.is_empty() || states.iter().any(known) {
-                continue;
-            }
-            let clause = self.clause(&[id], &states, "current", "sets", "ties");
-            let piece = self.piece(&states, &[id], clause);
-            found.push((states, piece));
-        }
-        self.tell(found);
-    }
-
-    /// The inductors that span the gap left by a bridge.
-    fn across(&self, edges: &[Ends], bridge: u32, crossing: &[PartEdge]) -> Vec<ElementId> {
-        let others = (0_u32..).zip(edges).filter(|(edge, _)| *edge != bridge);
-        let parted = components(self.parts.nodes(), others.map(|(_, ends)| *ends));
-        let (a, b) = edges[bridge as usize];
-        let far = if parted.joined((0, a)) { b } else { a };
-        crossing
-            .iter()
-            .filter(|(id, (x, y))| {
-                let coil = matches!(self.element(*id).kind, Kind::Inductor(..));
-                coil && parted.joined((far, *x)) != parted.joined((far, *y))
-            })
-            .map(|(id, _)| *id)
-            .collect()
     }
 }

@@ -136,7 +136,12 @@ impl<'a> Pattern<'a> {
         let port = |coil: ElementId| self.network.element(coil).port();
         let Some(own) = port(id) else { return };
         let others: Vec<Port> = group.iter().filter_map(|&coil| port(coil)).collect();
-        for unknown in others.into_iter().flat_map(Self::voltages) {
+        let sensed: Vec<u32> = group
+            .iter()
+            .filter_map(|&coil| self.current.get(&(coil, 0)).copied())
+            .collect();
+        let voltages = others.into_iter().flat_map(Self::voltages);
+        for unknown in voltages.chain(sensed) {
             self.flow(own, unknown);
         }
     }
