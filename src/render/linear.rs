@@ -11,6 +11,7 @@ pub struct Style {
     sign: &'static str,
     slash: &'static str,
     parallel: &'static str,
+    root: &'static str,
     exponent: fn(u32) -> String,
 }
 
@@ -22,6 +23,7 @@ pub const MACHINE: Style = Style {
     sign: "-",
     slash: "/",
     parallel: " || ",
+    root: "sqrt",
     exponent: |exponent| format!("^{exponent}"),
 };
 
@@ -33,6 +35,7 @@ pub const READING: Style = Style {
     sign: "−",
     slash: "/",
     parallel: " ∥ ",
+    root: "√",
     exponent: superscript,
 };
 
@@ -90,6 +93,10 @@ impl Style {
             Math::Power(base, exponent) => {
                 self.write(base, Within::Base, text);
                 text.push_str(&(self.exponent)(*exponent));
+            }
+            Math::Root(inner) => {
+                text.push_str(self.root);
+                self.write(inner, Within::Base, text);
             }
             Math::Negative(inner) => {
                 text.push_str(self.sign);

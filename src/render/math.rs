@@ -2,17 +2,18 @@
 //! spell.
 //!
 //! Terms stand by ascending total degree, then by names in byte order with larger exponents first.
-//! Within a term: the number, then the symbols as [`Names`] orders them. `R1*C1 - R2*C2` is
+//! Within a term: the number, then the symbols as [`Names`](crate::render::names::Names) orders them. `R1*C1 - R2*C2` is
 //! `Sum[+ Product[R1, C1], − Product[R2, C2]]`.
 
-use std::cmp::Ordering;
+mod terms;
+
 use std::sync::Arc;
 
-use smallvec::SmallVec;
-
-use crate::algebra::{Integer, Monomial, Polynomial, Symbol};
-use crate::render::names::Names;
-use crate::render::nest::nested;
+use crate::algebra::Integer;
+pub use terms::{
+    by_powers_of_s, equation, for_reading, ordered_terms, polynomial, power_series, power_terms,
+    ratio,
+};
 
 /// An expression to be written.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -31,6 +32,8 @@ pub enum Math {
     Power(Box<Math>, u32),
     /// Members in parallel; at least two.
     Parallel(Vec<Math>),
+    /// Square root.
+    Root(Box<Math>),
     /// Minus what follows.
     Negative(Box<Math>),
 }
@@ -197,7 +200,7 @@ impl Math {
     #[must_use]
     pub fn is_grouped(&self, within: Within, bars: Bars) -> bool {
         match self {
-            Self::Number(_) | Self::Symbol(_) => false,
+            Self::Number(_) | Self::Symbol(_) | Self::Root(_) => false,
             Self::Power(..) => within == Within::Base,
             Self::Sum(_) | Self::Negative(_) => within != Within::Alone,
             Self::Parallel(_) => !matches!(within, Within::Alone | Within::Sum),
@@ -219,7 +222,7 @@ impl Math {
             Self::Sum(terms) => terms.iter().map(|term| term.body.leaves()).sum(),
             Self::Product(parts) | Self::Parallel(parts) => parts.iter().map(Self::leaves).sum(),
             Self::Quotient(above, below) => above.leaves() + below.leaves(),
-            Self::Power(inner, _) | Self::Negative(inner) => inner.leaves(),
+            Self::Power(inner, _) | Self::Root(inner) | Self::Negative(inner) => inner.leaves(),
         }
     }
 }
@@ -227,286 +230,5 @@ impl Math {
 impl Term {
     fn into_math(self) -> Math {
         self.body.signed(self.negative)
-    }
-}
-
-/// A polynomial as a flat sum, the complex frequency treated like any symbol.
-///
-/// Cost: t·log t comparisons for t terms.
-#[must_use]
-pub fn polynomial(polynomial: &Polynomial, names: &Names<'_>) -> Math {
-    let order = TermOrder::new(polynomial, names);
-    let mut terms: Vec<(Key, &Monomial, &Integer)> = polynomial
-        .terms()
-        .iter()
-        .map(|(monomial, coefficient)| (order.key(monomial), monomial, coefficient))
-        .collect();
-    terms.sort_by(|left, right| compare_keys(&left.0, &right.0));
-    Math::sum(
-        terms
-            .into_iter()
-            .map(|(_, monomial, coefficient)| order.term(monomial, coefficient)),
-    )
-}
-
-/// The terms of a polynomial in the order in which they are written.
-#[must_use]
-pub fn ordered_terms(polynomial: &Polynomial, names: &Names<'_>) -> Vec<(Monomial, Integer)> {
-    let order = TermOrder::new(polynomial, names);
-    let mut terms: Vec<(Key, &(Monomial, Integer))> = polynomial
-        .terms()
-        .iter()
-        .map(|term| (order.key(&term.0), term))
-        .collect();
-    terms.sort_by(|left, right| compare_keys(&left.0, &right.0));
-    terms.into_iter().map(|(_, term)| term.clone()).collect()
-}
-
-/// A polynomial by ascending powers of s, each power once: `1 + s·(R1·C1 + R2·C1)`.
-#[must_use]
-pub fn by_powers_of_s(whole: &Polynomial, names: &Names<'_>) -> Math {
-    power_series(&whole.coefficients(Symbol::S), names)
-}
-
-/// Coefficients of s^0, s^1, … as one expression.
-#[must_use]
-pub fn power_series(coefficients: &[Polynomial], names: &Names<'_>) -> Math {
-    Math::sum(power_terms(coefficients, names))
-}
-
-/// Coefficients of s^0, s^1, …, each with its power; zero coefficients are left out.
-#[must_use]
-pub fn power_terms(coefficients: &[Polynomial], names: &Names<'_>) -> Vec<Math> {
-    coefficients
-        .iter()
-        .enumerate()
-        .filter(|(_, coefficient)| !coefficient.is_zero())
-        .map(|(power, coefficient)| {
-            let power = u32::try_from(power).unwrap_or(u32::MAX);
-            with_power(coefficient, power, names)
-        })
-        .collect()
-}
-
-fn with_power(coefficient: &Polynomial, power: u32, names: &Names<'_>) -> Math {
-    if coefficient.len() == 1 {
-        let frequency = Monomial::power(Symbol::S, power);
-        return polynomial(&coefficient.mul_monomial(&frequency), names);
-    }
-    let frequency = Math::name(names.name(Symbol::S)).power(power);
-    Math::product([frequency, for_reading(coefficient, names)])
-}
-
-/// A polynomial without s with the number and the symbols that all its terms share in front, and as a
-/// product where taking out symbols makes it one: `2·R1·(C1 + C2)`, `(R1 + R2)·(C1 + C2)`.
-#[must_use]
-pub fn for_reading(whole: &Polynomial, names: &Names<'_>) -> Math {
-    let shared = Polynomial::monomial(whole.content(), whole.monomial_content());
-    let Some(rest) = whole.div_exact(&shared) else {
-        return polynomial(whole, names);
-    };
-    let sum = polynomial(&rest, names);
-    let rest = match nested(&rest, names) {
-        product @ Math::Product(_) if product.leaves() < sum.leaves() => product,
-        _ => sum,
-    };
-    Math::product([polynomial(&shared, names), rest])
-}
-
-/// A condition `p = 0` with its negative terms brought to the other side: `R1·C1 = R2·C2`.
-#[must_use]
-pub fn equation(condition: &Polynomial, names: &Names<'_>) -> (Math, Math) {
-    let (_, whole) = by_powers_of_s(condition, names).split_sign();
-    let terms = whole.terms();
-    let side = |wanted: bool| {
-        let terms = terms.iter().filter(|(negative, _)| *negative == wanted);
-        Math::sum(terms.map(|(_, body)| (*body).clone()))
-    };
-    match (side(false), side(true)) {
-        (number @ Math::Number(_), other) => (other, number),
-        sides => sides,
-    }
-}
-
-/// N/D, reduced beforehand by whoever made it, each side by powers of s.
-#[must_use]
-pub fn ratio(numerator: &Polynomial, denominator: &Polynomial, names: &Names<'_>) -> Math {
-    Math::quotient(
-        by_powers_of_s(numerator, names),
-        by_powers_of_s(denominator, names),
-    )
-}
-
-/// Rank in byte order and exponent of each symbol, with the total degree in front.
-type Key = (u32, SmallVec<[(u32, u32); 8]>);
-
-fn compare_keys(left: &Key, right: &Key) -> Ordering {
-    left.0.cmp(&right.0).then_with(|| {
-        let mut pairs = left.1.iter().zip(right.1.iter());
-        pairs
-            .find_map(|(left, right)| {
-                let order = left.0.cmp(&right.0).then(right.1.cmp(&left.1));
-                (order != Ordering::Equal).then_some(order)
-            })
-            .unwrap_or(right.1.len().cmp(&left.1.len()))
-    })
-}
-
-/// Places of the symbols of one polynomial, in both orders, found once.
-struct TermOrder {
-    first: usize,
-    bytes: Vec<u32>,
-    reading: Vec<u32>,
-    spelled: Vec<Arc<str>>,
-}
-
-impl TermOrder {
-    fn new(polynomial: &Polynomial, names: &Names<'_>) -> Self {
-        let symbols = polynomial.symbols();
-        let first = symbols
-            .iter()
-            .map(|symbol| symbol.index())
-            .min()
-            .unwrap_or(0);
-        let last = symbols
-            .iter()
-            .map(|symbol| symbol.index())
-            .max()
-            .unwrap_or(0);
-        let ranks = |compare: &dyn Fn(Symbol, Symbol) -> Ordering| {
-            let mut sorted = symbols.clone();
-            sorted.sort_by(|left, right| compare(*left, *right));
-            let mut ranks = vec![0; last - first + 1];
-            for (rank, symbol) in (0_u32..).zip(sorted) {
-                ranks[symbol.index() - first] = rank;
-            }
-            ranks
-        };
-        let mut spelled = vec![Arc::from(""); last - first + 1];
-        for symbol in &symbols {
-            spelled[symbol.index() - first] = Arc::from(names.name(*symbol));
-        }
-        Self {
-            first,
-            spelled,
-            bytes: ranks(&|left, right| names.by_bytes(left, right)),
-            reading: ranks(&|left, right| names.by_reading(left, right)),
-        }
-    }
-
-    fn key(&self, monomial: &Monomial) -> Key {
-        let mut ranks: SmallVec<[(u32, u32); 8]> = monomial
-            .factors()
-            .map(|(symbol, exponent)| (self.bytes[symbol.index() - self.first], exponent))
-            .collect();
-        ranks.sort_unstable();
-        (monomial.total_degree(), ranks)
-    }
-
-    fn term(&self, monomial: &Monomial, coefficient: &Integer) -> Math {
-        let mut factors: SmallVec<[(Symbol, u32); 8]> = monomial.factors().collect();
-        factors.sort_by_key(|(symbol, _)| self.reading[symbol.index() - self.first]);
-        let symbols = factors.into_iter().map(|(symbol, exponent)| {
-            Math::Symbol(self.spelled[symbol.index() - self.first].clone()).power(exponent)
-        });
-        Math::product(std::iter::once(Math::integer(coefficient)).chain(symbols))
-    }
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::network::NetworkBuilder;
-    use crate::render::linear::{MACHINE, READING};
-    use crate::render::names::FrequencyPlace;
-    use crate::source::{Sources, Span};
-
-    /// A builder, and the polynomial made by `make` of the named symbols.
-    fn with_symbols(
-        list: &[&str],
-        make: impl Fn(&[Polynomial]) -> Polynomial,
-    ) -> (NetworkBuilder, Polynomial) {
-        let source = Sources::new().add("test", "");
-        let mut builder = NetworkBuilder::new(Span::new(source, 0, 0));
-        let symbols: Vec<Polynomial> = list
-            .iter()
-            .map(|name| match *name {
-                "s" => Polynomial::symbol(Symbol::S),
-                "pi" => Polynomial::symbol(Symbol::PI),
-                name => Polynomial::symbol(builder.symbols().intern(name)),
-            })
-            .collect();
-        let polynomial = make(&symbols);
-        (builder, polynomial)
-    }
-
-    fn machine(list: &[&str], make: impl Fn(&[Polynomial]) -> Polynomial) -> String {
-        let (builder, value) = with_symbols(list, make);
-        let names = Names::new(builder.network(), FrequencyPlace::Last);
-        MACHINE.spell(&polynomial(&value, &names))
-    }
-
-    #[test]
-    fn numbers_then_resistors_then_capacitors_then_s() {
-        let spelled = machine(&["C3", "R3", "s"], |it| {
-            Polynomial::one() + &(&it[0] * &it[1]) * &it[2]
-        });
-        assert_eq!(spelled, "1 + R3*C3*s");
-        let spelled = machine(&["C1", "R1"], |it| {
-            Polynomial::constant(3_i64) * (&it[0] * &it[1])
-        });
-        assert_eq!(spelled, "3*R1*C1");
-    }
-
-    #[test]
-    fn terms_stand_by_degree_then_by_bytes() {
-        let spelled = machine(&["R2", "C2", "R1", "C1"], |it| {
-            &(&it[2] * &it[3]) - &(&it[0] * &it[1])
-        });
-        assert_eq!(spelled, "R1*C1 - R2*C2");
-        let spelled = machine(&["R10", "R2", "R1"], |it| {
-            (&it[0] + &it[1]) + it[2].pow(2) + &it[2] * &it[0]
-        });
-        assert_eq!(spelled, "R10 + R2 + R1^2 + R1*R10");
-    }
-
-    #[test]
-    fn gains_stand_before_conductances_and_pi_before_both() {
-        let spelled = machine(&["gm", "A0", "R1", "L1", "M_T1", "C1", "pi"], |it| {
-            it.iter()
-                .fold(Polynomial::constant(2_i64), |product, it| &product * it)
-        });
-        assert_eq!(spelled, "2*pi*A0*gm*R1*L1*C1*M_T1");
-    }
-
-    #[test]
-    fn for_reading_powers_of_s_stand_once_and_first() {
-        let (builder, value) = with_symbols(&["R1", "R2", "C1", "s"], |it| {
-            let slope = &(&it[0] * &it[2]) + &(&it[1] * &it[2]);
-            let square = &(&it[0] * &it[1]) * &(&it[2] * &it[2]);
-            let linear = -(&slope * &it[3]);
-            Polynomial::one() + linear + square * it[3].pow(2)
-        });
-        let names = Names::new(builder.network(), FrequencyPlace::First);
-        assert_eq!(
-            READING.spell(&by_powers_of_s(&value, &names)),
-            "1 − s·C1·(R1 + R2) + s²·R1·R2·C1²"
-        );
-    }
-
-    #[test]
-    fn zero_and_negative_polynomials_are_spelled() {
-        assert_eq!(machine(&[], |_| Polynomial::zero()), "0");
-        assert_eq!(machine(&["R1"], |it| -it[0].clone()), "-R1");
-    }
-
-    #[test]
-    fn nested_form_takes_common_symbols_out() {
-        let (builder, value) = with_symbols(&["R1", "R2", "C1", "C2"], |it| {
-            &(&it[0] + &it[1]) * &(&it[2] + &it[3])
-        });
-        let names = Names::new(builder.network(), FrequencyPlace::Last);
-        let spelled = MACHINE.spell(&crate::render::nest::nested(&value, &names));
-        assert_eq!(spelled, "(R1 + R2)*(C1 + C2)");
     }
 }

@@ -12,7 +12,9 @@ pub mod linear;
 pub mod math;
 pub mod names;
 pub mod nest;
+pub mod parallel;
 pub mod sentence;
+pub mod standard;
 pub mod text;
 
 pub use answer::{Answer, Detail};

@@ -5,7 +5,7 @@ use std::cmp::Ordering;
 use std::collections::BTreeMap;
 
 use crate::algebra::Symbol;
-use crate::network::{Dimension, Network};
+use crate::network::{Dimension, Network, Sign};
 
 /// Where the complex frequency stands in a product.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -70,6 +70,19 @@ impl<'a> Names<'a> {
     #[must_use]
     pub fn is_taken(&self, name: &str) -> bool {
         self.network.symbols().find(name).is_some()
+    }
+
+    /// Whether the symbol is known to be positive by what was stated for it.
+    #[must_use]
+    pub fn is_positive(&self, symbol: Symbol) -> bool {
+        let facts = self.network.facts(symbol);
+        symbol == Symbol::PI || facts.is_some_and(|facts| facts.sign == Sign::Positive)
+    }
+
+    /// Whether values of the symbol stand in parallel as `x ∥ y`: resistors and inductors.
+    #[must_use]
+    pub fn stands_in_parallel(&self, symbol: Symbol) -> bool {
+        matches!(self.rank(symbol), Rank::Resistance | Rank::Inductance)
     }
 
     /// Order between symbols by the bytes of their names.

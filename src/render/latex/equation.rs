@@ -5,9 +5,10 @@ use crate::render::answer::Answer;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
 use crate::render::latex::escape::{escape, name};
 use crate::render::latex::spell::{LINE, lines, spell, width};
-use crate::render::math::{self, Math};
+use crate::render::math::{self, Bars, Math, Within};
 use crate::render::names::{FrequencyPlace, Names};
 use crate::render::sentence;
+use crate::render::standard::{StandardForm, standard};
 
 /// The equation of one function, or the sentence why there is none.
 pub(super) fn function(answer: &Answer<'_>, result: &FunctionReport) -> String {
@@ -29,6 +30,9 @@ fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
     let room = LINE - 60;
     if width(&above) <= room && width(&below) <= room {
         let right = spell(&Math::quotient(above, below));
+        if let Some(form) = standard(formula, names) {
+            return in_designers_terms(&left, &right, &form);
+        }
         return format!("\\begin{{equation*}}\n  {left} = {right}\n\\end{{equation*}}\n");
     }
     let definitions = [("N", above), ("D", below)].map(|(name, value)| Side {
@@ -36,6 +40,29 @@ fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
         value,
     });
     aligned(&format!("{left} &= \\frac{{N(s)}}{{D(s)}}"), &definitions)
+}
+
+/// The fraction, the same in gain, time constants and frequencies, and what these stand for.
+fn in_designers_terms(left: &str, right: &str, form: &StandardForm) -> String {
+    let gain = form.gain.as_ref().map(|gain| {
+        let group = gain.is_grouped(Within::Product, Bars::Drawn);
+        let (open, close) = if group { ("(", ")") } else { ("", "") };
+        format!("{open}{}{close} \\cdot ", spell(gain))
+    });
+    let fraction = spell(&form.fraction);
+    let first = format!(
+        "{left} &= {right} \\\\\n  &= {}{fraction}",
+        gain.unwrap_or_default()
+    );
+    let sides: Vec<Side> = form
+        .definitions
+        .iter()
+        .map(|(own, value)| Side {
+            left: name(own),
+            value: value.clone(),
+        })
+        .collect();
+    aligned(&first, &sides)
 }
 
 fn left_side(function: &str, formula: &Expanded) -> String {

@@ -116,6 +116,9 @@ impl Writer {
                 self.part(base, Within::Base);
                 self.push(&format!("^{{{exponent}}}"), 4);
             }
+            Math::Root(inner) => {
+                self.push(&format!("\\sqrt{{{}}}", spell(inner)), width(inner) + 8);
+            }
             Math::Negative(inner) => {
                 self.push("-", 10);
                 self.part(inner, Within::Sum);

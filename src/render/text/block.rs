@@ -90,7 +90,8 @@ impl Block {
         Self::within(math, Within::Alone)
     }
 
-    fn within(math: &Math, within: Within) -> Self {
+    /// An expression with drawn bars as it stands in a larger one.
+    pub(super) fn within(math: &Math, within: Within) -> Self {
         if !has_quotient(math) {
             return Self::text(READING.spell_within(math, within));
         }
@@ -141,7 +142,9 @@ fn separated(blocks: impl Iterator<Item = Block>, between: &str) -> Vec<Block> {
 fn has_quotient(math: &Math) -> bool {
     match math {
         Math::Quotient(..) => true,
-        Math::Number(_) | Math::Symbol(_) | Math::Parallel(_) | Math::Power(..) => false,
+        Math::Number(_) | Math::Symbol(_) | Math::Parallel(_) | Math::Power(..) | Math::Root(_) => {
+            false
+        }
         Math::Sum(terms) => terms.iter().any(|term| has_quotient(&term.body)),
         Math::Product(parts) => parts.iter().any(has_quotient),
         Math::Negative(inner) => has_quotient(inner),

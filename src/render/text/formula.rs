@@ -6,9 +6,10 @@ use crate::render::answer::Answer;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
 use crate::render::ledger;
 use crate::render::linear::READING;
-use crate::render::math::{self, Math};
+use crate::render::math::{self, Math, Within};
 use crate::render::names::{FrequencyPlace, Names};
 use crate::render::sentence;
+use crate::render::standard::{StandardForm, standard};
 use crate::render::text::Page;
 use crate::render::text::block::{Block, columns};
 use crate::render::text::fill;
@@ -97,7 +98,38 @@ fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
         let below = polynomial_lines(&formula.denominator, names, width);
         Block::fraction(&Block::lines(above), &Block::lines(below))
     };
-    Block::beside(&[Block::text(left), right]).indented(INDENT)
+    let mut text = Block::beside(&[Block::text(left.as_str()), right]).indented(INDENT);
+    if let Some(form) = standard(formula, names) {
+        text.push('\n');
+        text.push_str(&in_designers_terms(&form, columns(&left), page));
+    }
+    text
+}
+
+/// The same in gain, time constants, frequencies.
+fn in_designers_terms(form: &StandardForm, left: usize, page: &Page) -> String {
+    let mut blocks = vec![Block::text(format!("{}=  ", " ".repeat(left - 3)))];
+    if let Some(gain) = &form.gain {
+        blocks.push(Block::within(gain, Within::Product));
+        blocks.push(Block::text(" · "));
+    }
+    blocks.push(Block::within(&form.fraction, Within::Product));
+    let block = Block::beside(&blocks);
+    if INDENT + block.width() > page.width {
+        return String::new();
+    }
+    let mut text = block.indented(INDENT);
+    text.push('\n');
+    let widest = form.definitions.iter().map(|(name, _)| columns(name)).max();
+    for (name, value) in &form.definitions {
+        let gap = widest.unwrap_or(0) - columns(name);
+        let first = format!("{}{name} = ", " ".repeat(INDENT + left + gap - 1));
+        let rest = " ".repeat(columns(&first) - 2);
+        let mut lines = Vec::new();
+        push_hanging(&mut lines, &first, &rest, value, page.width);
+        text.extend(lines.iter().map(|line| format!("{line}\n")));
+    }
+    text
 }
 
 /// On one line where it fits, else one power of s a line, long coefficients broken.
