@@ -52,7 +52,7 @@ pub fn ledger(
     let passive = number(reactive.len())
         .saturating_sub(number(capacitor_loops.len()))
         .saturating_sub(number(inductor_cutsets.len()));
-    let states = states::device_states(&parts, degree.saturating_sub(passive));
+    let states = states::device_states(&parts);
     let bound = passive.saturating_add(states.count);
     debug_assert!(degree <= bound, "degree {degree} above its bound {bound}");
     let constraints = bound.saturating_sub(degree);

@@ -2,14 +2,15 @@
 
 use std::collections::BTreeMap;
 
-use crate::algebra::Rational;
+use crate::algebra::{Fraction, Rational, Symbol};
 use crate::network::builder::NetworkBuilder;
 use crate::network::element::{
     Control, Coupling, Element, Kind, Port, Quantity, Sense, Source, Strength,
 };
 use crate::network::graph::Network;
 use crate::network::id::{ElementId, NodeId};
-use crate::network::value::Value;
+use crate::network::relation::Relation;
+use crate::network::value::{Origin, Sign, SymbolFacts, Value};
 use crate::source::{Sources, Span};
 
 /// A network being drawn; each part's value is a symbol of its name.
@@ -40,6 +41,52 @@ impl Sketch {
             sketch.two_ends(words[0], words[1], words[2]);
         }
         sketch
+    }
+
+    /// Ties the symbols of names (`k_V2` for the coefficient of V2) to fractions, in one relation.
+    pub(crate) fn relation(mut self, sets: &[(&str, Fraction)], origin: Origin) -> Self {
+        let place = self.place;
+        let sets: Vec<(Symbol, Fraction)> = sets
+            .iter()
+            .map(|(name, value)| (self.builder.symbols().intern(name), value.clone()))
+            .collect();
+        for (symbol, _) in &sets {
+            self.builder.facts(SymbolFacts {
+                symbol: *symbol,
+                origin,
+                dimension: None,
+                sign: Sign::Real,
+                nominal: None,
+                tolerance: None,
+                range: None,
+                in_hertz: false,
+                place,
+            });
+        }
+        self.builder.relation(Relation {
+            sets,
+            text: "relation".to_owned(),
+            tolerance: None,
+            device_states: 0,
+            place,
+        });
+        self
+    }
+
+    /// A symbol as a fraction.
+    pub(crate) fn fraction(&mut self, name: &str) -> Fraction {
+        Fraction::symbol(self.builder.symbols().intern(name))
+    }
+
+    /// One more voltage that a controlled source senses, with a coefficient of its own.
+    pub(crate) fn also(mut self, name: &str, of: [&str; 2]) -> Self {
+        let sense = Sense::Voltage(self.port(of[0], of[1]));
+        let more = self.control(&format!("{name}_2"), sense);
+        let id = self.parts[name];
+        if let Kind::Source(source) = &mut self.builder.element_mut(id).kind {
+            source.controls.extend(more);
+        }
+        self
     }
 
     pub(crate) fn finish(self) -> Network {

@@ -186,7 +186,7 @@ impl Search<'_> {
         let mut fixed = self.parts.shorts();
         fixed.extend(self.outputs_fixed());
         let holds = |element: &Element| !element.is_short();
-        let mut found = self.extra_loops(fixed, holds, "sets", "ties");
+        let mut found = self.extra_loops(fixed, holds, "sets");
         if !self.sensed.is_empty() {
             let apart = |part: &ElementId| self.is_apart(*part) && !self.sensed.contains(part);
             found.retain(|(members, _)| members.iter().all(apart));
@@ -210,7 +210,7 @@ impl Search<'_> {
                 .edges(|_, element| element.forced_voltage().filter(|_| !element.is_short())),
         );
         let holds = |element: &Element| !element.is_short();
-        let mut found = self.extra_loops(fixed, holds, "holds", "ties");
+        let mut found = self.extra_loops(fixed, holds, "holds");
         if !self.told.is_empty() {
             found.retain(|(members, _)| members.iter().all(|&part| self.is_apart(part)));
         }
@@ -222,8 +222,7 @@ impl Search<'_> {
         &self,
         fixed: Vec<PartEdge>,
         holds: impl Fn(&Element) -> bool,
-        one: &str,
-        several: &str,
+        one: &'static str,
     ) -> Vec<(Vec<ElementId>, ConstraintEvidence)> {
         let capacitors = self.capacitors();
         if capacitors.is_empty() || !fixed.iter().any(|(id, _)| holds(self.element(*id))) {
@@ -248,7 +247,7 @@ impl Search<'_> {
                     return None;
                 }
                 states.sort_unstable();
-                let clause = self.clause(&holders, &states, "voltage", one, several);
+                let clause = self.clause(&holders, &states, "voltage", one);
                 Some((states.clone(), self.piece(&states, &rest, clause)))
             })
             .collect()
@@ -259,25 +258,20 @@ impl Search<'_> {
         holders: &[ElementId],
         states: &[ElementId],
         quantity: &str,
-        one: &str,
-        several: &str,
+        one: &'static str,
     ) -> String {
         let network = self.parts.network;
         let who = part_names(network, holders);
         let what = list(&part_names(network, states));
-        let plural = |verb: &str| match who.len() {
-            1 => verb.to_owned(),
-            _ => verb.trim_end_matches('s').to_owned(),
+        let verb = |verb: &'static str| match who.len() {
+            1 => verb,
+            _ => verb.trim_end_matches('s'),
         };
+        let who = list(&who);
         if states.len() == 1 {
-            format!("{} {} the {quantity} of {what}", list(&who), plural(one))
+            format!("{who} {} the {quantity} of {what}", verb(one))
         } else {
-            let verb = if several == "ties" && who.len() > 1 {
-                "tie".to_owned()
-            } else {
-                several.to_owned()
-            };
-            format!("{} {verb} the {quantity}s of {what} together", list(&who))
+            format!("{who} {} the {quantity}s of {what} together", verb("ties"))
         }
     }
 
@@ -327,7 +321,7 @@ impl Search<'_> {
             if coils.is_empty() || drivers.is_empty() || known {
                 continue;
             }
-            let clause = self.clause(&drivers, &coils, "current", "sets", "ties");
+            let clause = self.clause(&drivers, &coils, "current", "sets");
             let piece = self.piece(&coils, &drivers, clause);
             found.push((coils, piece));
         }

@@ -2,10 +2,13 @@
 
 use std::collections::{BTreeMap, BTreeSet};
 
+use smallvec::{SmallVec, smallvec};
+
 use super::topology::Parts;
-use crate::algebra::{Fraction, Symbol};
+use crate::algebra::gcd::gcd;
+use crate::algebra::{Fraction, Polynomial, Symbol};
 use crate::budget::Budget;
-use crate::network::{Element, Kind, Network, RelationId, Source, Strength, Value};
+use crate::network::{Element, Kind, Network, Origin, RelationId, Source, Strength, Value};
 
 /// How many states there are, and the relations in which s stands.
 #[derive(Debug, Default)]
@@ -15,9 +18,9 @@ pub(super) struct DeviceStates {
 }
 
 /// The larger of numerator and denominator degree, relations substituted, once for each place
-/// where a value enters the equations. What sources follow their drives by counts only where the
-/// `needed` states are not found without it.
-pub(super) fn device_states(parts: &Parts<'_>, needed: u32) -> DeviceStates {
+/// where a value enters the equations; the coefficients that the relation of one source sets count
+/// as one, over their common denominator.
+pub(super) fn device_states(parts: &Parts<'_>) -> DeviceStates {
     let network = parts.network;
     if !network.relations().any(|(_, relation)| relation.has_s()) {
         return DeviceStates::default();
@@ -25,58 +28,73 @@ pub(super) fn device_states(parts: &Parts<'_>, needed: u32) -> DeviceStates {
     let dynamic = Dynamic::new(network);
     let mut used = Vec::new();
     for (_, element) in &parts.list {
-        slots(element, &mut used);
+        slots(network, element, &mut used);
     }
     couplings(parts, &mut used);
-    let count = dynamic.count(&used);
-    if count < needed {
-        let follows = parts.list.iter().filter_map(|(_, element)| source(element));
-        used.extend(follows.flat_map(|source| source.drives.iter().map(|follow| &follow.value)));
-    }
+    let counts = used.iter().map(|together| dynamic.count(together));
     DeviceStates {
-        count: dynamic.count(&used),
-        relations: dynamic.relations(network, &used),
+        count: counts.fold(0, u32::saturating_add),
+        relations: dynamic.relations(network, used.iter().flatten()),
     }
 }
 
-fn source(element: &Element) -> Option<&Source> {
-    match &element.kind {
-        Kind::Source(source) => Some(source),
-        _ => None,
-    }
-}
+/// Symbols whose denominators are cleared together.
+type Together = SmallVec<[Symbol; 1]>;
 
 /// The values of a part, each as often as it enters the equations.
-fn slots<'a>(element: &'a Element, used: &mut Vec<&'a Value>) {
+fn slots(network: &Network, element: &Element, used: &mut Vec<Together>) {
     match &element.kind {
-        Kind::Source(source) => used.extend(
-            source
-                .controls
-                .iter()
-                .filter(|control| control.acts())
-                .map(|control| &control.value),
-        ),
-        Kind::Amplifier { gain, rout, .. } => used.extend(gain.iter().chain(rout)),
-        Kind::Conveyor { polarity, .. } => used.push(polarity),
-        Kind::Transformer { ratio: value, .. } | Kind::Gyrator { g: value, .. } => {
-            used.extend([value, value]);
+        Kind::Source(source) => of_source(network, source, used),
+        Kind::Amplifier { gain, rout, .. } => {
+            used.extend(gain.iter().chain(rout).filter_map(alone));
         }
-        _ => used.extend(element.value()),
+        Kind::Conveyor { polarity, .. } => used.extend(alone(polarity)),
+        Kind::Transformer { ratio: value, .. } | Kind::Gyrator { g: value, .. } => {
+            used.extend([value, value].into_iter().filter_map(alone));
+        }
+        _ => used.extend(element.value().and_then(alone)),
     }
 }
 
-fn couplings<'a>(parts: &Parts<'a>, used: &mut Vec<&'a Value>) {
+fn alone(value: &Value) -> Option<Together> {
+    match value {
+        Value::Symbol(symbol) => Some(smallvec![*symbol]),
+        Value::Number(_) => None,
+    }
+}
+
+fn of_source(network: &Network, source: &Source, used: &mut Vec<Together>) {
+    let controls = source.controls.iter().filter(|control| control.acts());
+    let values = controls
+        .map(|control| &control.value)
+        .chain(source.drives.iter().map(|follow| &follow.value));
+    let mut own = Together::new();
+    for value in values {
+        let Value::Symbol(symbol) = value else {
+            continue;
+        };
+        let facts = network.facts(*symbol);
+        if facts.is_some_and(|facts| facts.origin == Origin::Coefficient) {
+            own.push(*symbol);
+        } else {
+            used.extend(alone(value));
+        }
+    }
+    used.push(own);
+}
+
+fn couplings(parts: &Parts<'_>, used: &mut Vec<Together>) {
     for coupling in parts.network.couplings() {
         if parts.has(coupling.first) && parts.has(coupling.second) {
             let (Strength::Factor(value) | Strength::Mutual(value)) = &coupling.strength;
-            used.extend([value, value]);
+            used.extend([value, value].into_iter().filter_map(alone));
         }
     }
 }
 
-/// The symbols that relations make depend on s, with their degrees.
+/// The symbols that relations make depend on s.
 struct Dynamic {
-    degree: BTreeMap<Symbol, u32>,
+    known: BTreeMap<Symbol, Substituted>,
 }
 
 impl Dynamic {
@@ -101,31 +119,37 @@ impl Dynamic {
             }
         }
         Self {
-            degree: degrees(&reached, &value, &users),
+            known: substituted(&reached, &value, &users),
         }
     }
 
-    fn count(&self, used: &[&Value]) -> u32 {
-        let degree = |value: &&Value| match value {
-            Value::Symbol(symbol) => self.degree.get(symbol).copied().unwrap_or(0),
-            Value::Number(_) => 0,
-        };
-        used.iter().map(degree).fold(0, u32::saturating_add)
+    /// Degree of values over their common denominator.
+    fn count(&self, together: &Together) -> u32 {
+        let known: Vec<&Substituted> = together
+            .iter()
+            .filter_map(|symbol| self.known.get(symbol))
+            .collect();
+        match &known[..] {
+            [] => 0,
+            [one] => one.degree,
+            many => common(many).unwrap_or_else(|| {
+                let degrees = many.iter().map(|full| full.degree);
+                degrees.fold(0, u32::saturating_add)
+            }),
+        }
     }
 
     /// The relations in which s stands that the used values lead to, in file order.
-    fn relations(&self, network: &Network, used: &[&Value]) -> Vec<RelationId> {
+    fn relations<'a>(
+        &self,
+        network: &Network,
+        used: impl Iterator<Item = &'a Symbol>,
+    ) -> Vec<RelationId> {
         let mut seen = BTreeSet::new();
         let mut found = BTreeSet::new();
-        let mut open: Vec<Symbol> = used
-            .iter()
-            .filter_map(|value| match value {
-                Value::Symbol(symbol) => Some(*symbol),
-                Value::Number(_) => None,
-            })
-            .collect();
+        let mut open: Vec<Symbol> = used.copied().collect();
         while let Some(symbol) = open.pop() {
-            if !self.degree.contains_key(&symbol) || !seen.insert(symbol) {
+            if !self.known.contains_key(&symbol) || !seen.insert(symbol) {
                 continue;
             }
             let Some(id) = network.set_by(symbol) else {
@@ -147,12 +171,12 @@ impl Dynamic {
     }
 }
 
-/// Degrees of the symbols that depend on s, innermost first.
-fn degrees(
+/// The symbols that depend on s with all such symbols put in, innermost first.
+fn substituted(
     reached: &BTreeSet<Symbol>,
     value: &BTreeMap<Symbol, &Fraction>,
     users: &BTreeMap<Symbol, Vec<Symbol>>,
-) -> BTreeMap<Symbol, u32> {
+) -> BTreeMap<Symbol, Substituted> {
     let inner = |symbol: &Symbol| {
         let symbols = value[symbol].symbols().into_iter();
         symbols.filter(|inner| reached.contains(inner)).count()
@@ -180,9 +204,6 @@ fn degrees(
         }
     }
     known
-        .into_iter()
-        .map(|(symbol, full)| (symbol, full.degree))
-        .collect()
 }
 
 /// A value with all that depends on s put in, where that could be written down.
@@ -219,6 +240,24 @@ impl Substituted {
     }
 }
 
+/// The degree of values brought over one denominator; `None` when that is too long to write down.
+fn common(values: &[&Substituted]) -> Option<u32> {
+    let budget = Budget::default();
+    let mut whole = Polynomial::one();
+    for value in values {
+        let own = value.fraction.as_ref()?.denominator();
+        let shared = gcd(&whole, own, &budget).ok()?;
+        whole = whole.product(&own.div_exact(&shared)?, &budget).ok()?;
+    }
+    let degree = whole.degree(Symbol::S);
+    let mut above = values.iter();
+    above.try_fold(degree, |most, value| {
+        let fraction = value.fraction.as_ref()?;
+        let missing = degree - fraction.denominator().degree(Symbol::S);
+        Some(most.max(fraction.numerator().degree(Symbol::S) + missing))
+    })
+}
+
 fn degree(value: &Fraction) -> u32 {
     let above = value.numerator().degree(Symbol::S);
     above.max(value.denominator().degree(Symbol::S))
@@ -233,4 +272,80 @@ fn bound(value: &Fraction, known: &BTreeMap<Symbol, Substituted>) -> u32 {
         Some(often.saturating_mul(full.degree))
     });
     inner.fold(degree(value), u32::saturating_add)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::network::sketch::Sketch;
+
+    /// 1/(1 + s·T)
+    fn lag(sketch: &mut Sketch, name: &str) -> Fraction {
+        let budget = Budget::unlimited();
+        let t = sketch.fraction(name);
+        let product = Fraction::symbol(Symbol::S).mul(&t, &budget).unwrap();
+        let below = Fraction::one().add(&product, &budget).unwrap();
+        below.recip().unwrap()
+    }
+
+    fn states(sketch: Sketch) -> (u32, usize) {
+        let network = sketch.finish();
+        let states = device_states(&Parts::new(&network, &[]));
+        (states.count, states.relations.len())
+    }
+
+    fn plain() -> Sketch {
+        Sketch::of("Vs in ground; R1 in a; R2 a ground; RL b ground").by_voltage(
+            "V2",
+            ["b", "ground"],
+            ["a", "ground"],
+        )
+    }
+
+    #[test]
+    fn no_relation_no_state() {
+        assert_eq!(states(plain()), (0, 0));
+    }
+
+    #[test]
+    fn a_lag_in_a_gain_is_one_state() {
+        let mut sketch = plain();
+        let value = lag(&mut sketch, "T");
+        let sketch = sketch.relation(&[("k_V2", value)], Origin::Coefficient);
+        assert_eq!(states(sketch), (1, 1));
+    }
+
+    #[test]
+    fn coefficients_of_one_relation_share_a_denominator() {
+        let mut sketch = plain().also("V2", ["in", "ground"]);
+        let (first, second) = (lag(&mut sketch, "T"), lag(&mut sketch, "U"));
+        let alike = [("k_V2", first.clone()), ("k_V2_2", first.clone())];
+        let apart = [("k_V2", first), ("k_V2_2", second)];
+        let again = plain().also("V2", ["in", "ground"]);
+        assert_eq!(states(again.relation(&alike, Origin::Coefficient)), (1, 1));
+        assert_eq!(states(sketch.relation(&apart, Origin::Coefficient)), (2, 1));
+    }
+
+    #[test]
+    fn a_gain_used_twice_counts_twice_through_its_relation() {
+        let mut sketch = plain().also("V2", ["in", "ground"]);
+        let value = lag(&mut sketch, "T");
+        let gain = sketch.fraction("K");
+        let square = gain.mul(&gain, &Budget::unlimited()).unwrap();
+        let sketch = sketch
+            .relation(&[("K", value)], Origin::Free)
+            .relation(&[("k_V2", gain)], Origin::Free)
+            .relation(&[("k_V2_2", square)], Origin::Free);
+        assert_eq!(states(sketch), (3, 1));
+    }
+
+    #[test]
+    fn an_impedance_holds_its_states_until_it_is_taken_out() {
+        let mut sketch = Sketch::of("Vs in ground; Z1 in a; R1 a ground");
+        let value = lag(&mut sketch, "T");
+        let id = sketch.id("Z1");
+        let network = sketch.relation(&[("Z1", value)], Origin::Part).finish();
+        let count = |without: &[_]| device_states(&Parts::new(&network, without)).count;
+        assert_eq!((count(&[]), count(&[id])), (1, 0));
+    }
 }

@@ -89,9 +89,18 @@ impl<'a> Parts<'a> {
         let rest = rest.flat_map(|(_, element)| element.conducting());
         let parted = components(self.nodes(), rest.map(ends));
         let crossing = self.edges(|_, element| element.port().filter(|_| cuts(element)));
+        let is_chosen = |id: ElementId| chosen(&self.network.element(id).kind);
         let mut list = cut_parts(&parted, &crossing);
+        if !list.iter().all(|cut| cut.iter().any(|&id| is_chosen(id))) {
+            // Sources alone hold an island, which floats freely once they are open.
+            let own: Vec<PartEdge> = crossing
+                .into_iter()
+                .filter(|(id, _)| is_chosen(*id))
+                .collect();
+            list = cut_parts(&parted, &own);
+        }
         for cut in &mut list {
-            cut.sort_by_key(|&id| (!chosen(&self.network.element(id).kind), id));
+            cut.sort_by_key(|&id| (!is_chosen(id), id));
         }
         list
     }

@@ -59,7 +59,7 @@ impl Search<'_> {
             if states.is_empty() || !states.iter().all(apart) {
                 continue;
             }
-            let clause = self.clause(&[transformer], &states, "voltage", "sets", "ties");
+            let clause = self.clause(&[transformer], &states, "voltage", "sets");
             let piece = self.piece(&states, &[transformer], clause);
             found.push((states, piece));
         }
@@ -105,7 +105,7 @@ impl Search<'_> {
             if states.is_empty() || !states.iter().all(|&part| self.is_apart(part)) {
                 continue;
             }
-            let clause = self.clause(&[id], &states, "current", "sets", "ties");
+            let clause = self.clause(&[id], &states, "current", "sets");
             let piece = self.piece(&states, &[id], clause);
             found.push((states, piece));
         }
