@@ -5,7 +5,7 @@
 //! tree, and the determinant is zero.
 
 use super::naming::{is_written, list, node_list, part_name, part_names};
-use super::{Wiring, few};
+use super::{Wiring, few, number};
 use crate::diagnostic::Diagnostic;
 use crate::network::element::{Element, Kind};
 use crate::network::id::{ElementId, NodeId};
@@ -40,6 +40,9 @@ pub(super) fn reference(wiring: &Wiring<'_>) -> Option<Diagnostic> {
 
 /// Islands, cut-sets of current sources, nodes whose voltage nothing determines.
 pub(super) fn faults(wiring: &Wiring<'_>) -> Vec<Diagnostic> {
+    if is_held_by_two_ended_parts(wiring) {
+        return Vec::new();
+    }
     let mut told = vec![false; wiring.nodes()];
     let rest = |more| format!("and {more} more such places");
     let mut found = Vec::new();
@@ -58,6 +61,16 @@ pub(super) fn faults(wiring: &Wiring<'_>) -> Vec<Diagnostic> {
     let undetermined = |island: &Island| island.undetermined(wiring);
     found.extend(few(islands.iter().map(undetermined), rest));
     found
+}
+
+/// Whether parts whose edge stands in all three graphs join every node to the reference.
+fn is_held_by_two_ended_parts(wiring: &Wiring<'_>) -> bool {
+    let edges = wiring.parts.iter().filter_map(|(_, element)| {
+        let everywhere = element.value().is_some() || element.is_short();
+        let port = element.port().filter(|_| everywhere)?;
+        Some((number(port.from), number(port.to)))
+    });
+    components(wiring.nodes(), edges).count == 1
 }
 
 /// A component without the reference.
