@@ -1,8 +1,6 @@
 //! A long polynomial with its common symbols taken out, one after the other (Horner's scheme in
 //! several variables): far shorter than the sum of its terms, and still exact.
 
-use std::collections::BTreeMap;
-
 use crate::algebra::{Integer, Monomial, Polynomial, Symbol};
 use crate::render::math::{self, Math};
 use crate::render::names::Names;
@@ -50,18 +48,36 @@ fn join(parts: &mut Vec<(Vec<Math>, Math)>, taken: Math, inner: Math) {
 
 /// The symbol that stands in most terms, at least two, and its least exponent there.
 fn most_shared(terms: &Terms, names: &Names<'_>) -> Option<(Symbol, u32)> {
-    let mut seen: BTreeMap<Symbol, (usize, u32)> = BTreeMap::new();
+    let mut seen: Vec<Option<Seen>> = Vec::new();
     for (symbol, exponent) in terms.iter().flat_map(|(monomial, _)| monomial.factors()) {
-        let entry = seen.entry(symbol).or_insert((0, exponent));
-        *entry = (entry.0 + 1, entry.1.min(exponent));
+        let index = symbol.index();
+        if index >= seen.len() {
+            seen.resize(index + 1, None);
+        }
+        let entry = seen[index].get_or_insert(Seen {
+            symbol,
+            terms: 0,
+            exponent,
+        });
+        entry.terms += 1;
+        entry.exponent = entry.exponent.min(exponent);
     }
     seen.into_iter()
-        .filter(|(_, (count, _))| *count > 1)
+        .flatten()
+        .filter(|it| it.terms > 1)
         .max_by(|left, right| {
-            let count = left.1.0.cmp(&right.1.0);
-            count.then_with(|| names.by_reading(right.0, left.0))
+            let by_terms = left.terms.cmp(&right.terms);
+            by_terms.then_with(|| names.by_reading(right.symbol, left.symbol))
         })
-        .map(|(symbol, (_, exponent))| (symbol, exponent))
+        .map(|it| (it.symbol, it.exponent))
+}
+
+/// In how many terms a symbol was seen, and its least exponent.
+#[derive(Clone, Copy)]
+struct Seen {
+    symbol: Symbol,
+    terms: usize,
+    exponent: u32,
 }
 
 fn is_zero(math: &Math) -> bool {

@@ -78,10 +78,20 @@ struct Side {
 }
 
 fn with_definitions(function: &str, form: &NamedForm) -> String {
-    let quotient = Math::quotient(form.numerator.clone(), form.denominator.clone());
-    let first = format!("{}(s) &= {}", name(function), spell(&quotient));
-    let sides: Vec<Side> = form.definitions.iter().map(definition).collect();
-    aligned(&first, &sides)
+    let left = name(function);
+    let definitions = form.definitions.iter().map(definition);
+    let fits = |side: &Math| width(side) <= LINE - 60;
+    if fits(&form.numerator) && fits(&form.denominator) {
+        let quotient = Math::quotient(form.numerator.clone(), form.denominator.clone());
+        let first = format!("{left}(s) &= {}", spell(&quotient));
+        return aligned(&first, &definitions.collect::<Vec<_>>());
+    }
+    let sides = [("N", &form.numerator), ("D", &form.denominator)].map(|(own, value)| Side {
+        left: format!("{own}(s)"),
+        value: value.clone(),
+    });
+    let sides: Vec<Side> = sides.into_iter().chain(definitions).collect();
+    aligned(&format!("{left}(s) &= \\frac{{N(s)}}{{D(s)}}"), &sides)
 }
 
 fn definition(definition: &Definition) -> Side {

@@ -134,8 +134,8 @@ impl Writer {
             match (index, negative) {
                 (0, false) => {}
                 (0, true) => self.push("-", 10),
-                (_, false) => self.push(" + ", 17),
-                (_, true) => self.push(" - ", 17),
+                (_, false) => self.push(" + ", 13),
+                (_, true) => self.push(" - ", 13),
             }
             self.part(body, Within::Sum);
         }
@@ -173,7 +173,7 @@ mod tests {
     fn long_sums_are_broken_before_a_sign() {
         let math = Math::sum((1..=20).map(|index| Math::name(&format!("R{index}"))));
         let lines = lines(&math, 40);
-        assert_eq!(lines.len(), 3);
+        assert_eq!(lines.len(), 2);
         assert!(lines[1].starts_with("\\quad{} + R_{"), "{}", lines[1]);
     }
 }
