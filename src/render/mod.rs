@@ -8,6 +8,7 @@ pub mod coefficients;
 pub mod json;
 pub mod latex;
 pub mod ledger;
+pub mod limits;
 pub mod linear;
 pub mod math;
 pub mod names;

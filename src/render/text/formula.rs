@@ -5,6 +5,7 @@ use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
 use crate::render::answer::Answer;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
 use crate::render::ledger;
+use crate::render::limits::{self, Limit};
 use crate::render::linear::READING;
 use crate::render::math::{self, Math, Within};
 use crate::render::names::{FrequencyPlace, Names};
@@ -104,7 +105,31 @@ fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
         text.push('\n');
         text.push_str(&in_designers_terms(&form, columns(&left), page));
     }
+    if depends_on_s {
+        text.push('\n');
+        text.push_str(&frequency_limits(name, formula, names, page));
+    }
     text
+}
+
+/// `dc(H) = …`, `hf(H) = …`, as a claim would say it.
+fn frequency_limits(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
+    let mut lines = Vec::new();
+    for (word, limit) in [
+        ("dc", limits::dc(formula, names)),
+        ("hf", limits::hf(formula, names)),
+    ] {
+        let first = format!("  {word}({name}) = ");
+        match limit {
+            Some(Limit::Value(value)) => {
+                let rest = " ".repeat(columns(&first) - 2);
+                push_hanging(&mut lines, &first, &rest, &value, page.width);
+            }
+            Some(Limit::Infinite) => lines.push(format!("{first}infinite")),
+            None => {}
+        }
+    }
+    lines.iter().map(|line| format!("{line}\n")).collect()
 }
 
 /// The same in gain, time constants, frequencies.
