@@ -7,6 +7,7 @@ pub mod algebra;
 pub mod analysis;
 pub mod budget;
 pub mod diagnostic;
+pub mod language;
 pub mod network;
 pub mod render;
 pub mod source;
