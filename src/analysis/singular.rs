@@ -17,6 +17,8 @@ pub struct Case<'a> {
     pub network: &'a Network,
     /// Parts taken out.
     pub without: &'a [ElementId],
+    /// Node pairs that the question touches.
+    pub touched: &'a [Port],
     /// A node pair that the question shorts.
     pub short: Option<Port>,
     /// Parts met on the way: those that were contracted when the determinant vanished.
@@ -48,7 +50,9 @@ pub fn explain(case: &Case<'_>) -> Diagnostic {
 }
 
 fn wiring(case: &Case<'_>) -> Option<Diagnostic> {
-    faults(case.network, case.without).into_iter().next()
+    faults(case.network, case.without, case.touched)
+        .into_iter()
+        .next()
 }
 
 /// Unknowns that stand in fewer equations than they are.

@@ -10,11 +10,14 @@ mod idle;
 mod islands;
 mod loops;
 mod naming;
+mod ports;
 
 use std::collections::BTreeSet;
 
+use petgraph::unionfind::UnionFind;
+
 use crate::diagnostic::Diagnostic;
-use crate::network::element::Element;
+use crate::network::element::{Element, Port};
 use crate::network::graph::Network;
 use crate::network::id::{ElementId, NodeId};
 use crate::network::topology::{Edges, sensed_currents};
@@ -32,25 +35,38 @@ const MESSAGES: usize = 10;
 /// Cost: all but linear in the number of parts.
 #[must_use]
 pub fn check(network: &Network) -> Vec<Diagnostic> {
-    let mut found = faults(network, &[]);
+    let wiring = Wiring::new(network, &[]);
+    let mut found = match islands::reference(&wiring) {
+        Some(fault) => vec![fault],
+        None => singular(&wiring, vec![false; wiring.nodes()]),
+    };
+    if found.is_empty() {
+        found = ports::faults(network);
+    }
     found.extend(idle::warnings(network));
     found
 }
 
-/// What makes the network singular for sure when the parts in `without` are taken out; empty where
-/// the wiring is sound.
+/// What makes the network of a question singular for sure, with the parts in `without` taken out;
+/// empty where the wiring is sound.
+///
+/// Islands that come about by taking parts out float freely and are no fault, unless the question
+/// touches them by one of the node pairs in `touched`.
 ///
 /// Cost: all but linear in the number of parts.
 #[must_use]
-pub fn faults(network: &Network, without: &[ElementId]) -> Vec<Diagnostic> {
+pub fn faults(network: &Network, without: &[ElementId], touched: &[Port]) -> Vec<Diagnostic> {
     let wiring = Wiring::new(network, without);
-    if let Some(fault) = islands::reference(&wiring) {
-        return vec![fault];
-    }
-    let mut found = islands::faults(&wiring);
-    found.extend(loops::faults(&wiring));
+    let free = wiring.free_nodes(touched);
+    singular(&wiring, free)
+}
+
+/// Faults, but for nodes that may float.
+fn singular(wiring: &Wiring<'_>, free: Vec<bool>) -> Vec<Diagnostic> {
+    let mut found = islands::faults(wiring, free);
+    found.extend(loops::faults(wiring));
     if found.is_empty() {
-        found = feedback::faults(&wiring);
+        found = feedback::faults(wiring);
     }
     found
 }
@@ -87,6 +103,29 @@ impl<'a> Wiring<'a> {
         };
         wiring.sensed = sensed_currents(wiring.parts.iter().map(|(_, element)| *element));
         wiring
+    }
+
+    /// Nodes that neither a current nor a voltage ties to the reference.
+    fn free_nodes(&self, touched: &[Port]) -> Vec<bool> {
+        let mut sets = UnionFind::<u32>::new(self.nodes());
+        for port in touched {
+            sets.union(number(port.from), number(port.to));
+        }
+        for (_, element) in &self.parts {
+            let mut edges = element.current_edges();
+            edges.extend(element.voltage_edges());
+            let mut ends = edges.iter().flat_map(|port| [port.from, port.to]);
+            if let Some(first) = ends.next() {
+                for end in ends {
+                    sets.union(number(first), number(end));
+                }
+            }
+        }
+        let ground = sets.find(0);
+        sets.into_labeling()
+            .into_iter()
+            .map(|set| set != ground)
+            .collect()
     }
 
     fn nodes(&self) -> usize {

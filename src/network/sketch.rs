@@ -9,6 +9,7 @@ use crate::network::element::{
 };
 use crate::network::graph::Network;
 use crate::network::id::{ElementId, NodeId};
+use crate::network::question::{Ask, Question};
 use crate::network::relation::Relation;
 use crate::network::value::{Origin, Sign, SymbolFacts, Value};
 use crate::source::{Sources, Span};
@@ -71,6 +72,20 @@ impl Sketch {
             place,
         });
         self
+    }
+
+    /// A question for a driving-point impedance.
+    pub(crate) fn ask_impedance(&mut self, name: &str, at: [&str; 2], without: &[&str]) {
+        let port = self.port(at[0], at[1]);
+        let symbol = self.builder.symbols().intern(name);
+        self.builder.question(Question {
+            name: name.to_owned(),
+            symbol,
+            ask: Ask::Impedance(port),
+            without: without.iter().map(|part| self.parts[*part]).collect(),
+            text: String::new(),
+            place: self.place,
+        });
     }
 
     /// A symbol as a fraction.

@@ -113,6 +113,14 @@ fn parts_taken_out_leave_the_ledger() {
 }
 
 #[test]
+fn an_island_held_by_sources_alone_has_its_own_cut_sets() {
+    let network =
+        Sketch::of("R0 c ground; I1 a ground; I2 b ground; L1 a b; R1 a a2; R2 b b2").finish();
+    let order = ledger(&network, &[], 0, 0);
+    assert_eq!(names(&network, &order.inductor_cutsets), ["L1"]);
+}
+
+#[test]
 fn an_integrator_is_no_static_set() {
     let sketch = Sketch::of("Vs in ground; R1 in a; C1 a out; RL out ground");
     let (order, _) = of(sketch.opamp("U1", "ground", "a", "out"));

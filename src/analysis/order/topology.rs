@@ -90,13 +90,16 @@ impl<'a> Parts<'a> {
         let parted = components(self.nodes(), rest.map(ends));
         let crossing = self.edges(|_, element| element.port().filter(|_| cuts(element)));
         let is_chosen = |id: ElementId| chosen(&self.network.element(id).kind);
+        let own: Vec<PartEdge> = crossing
+            .iter()
+            .copied()
+            .filter(|(id, _)| is_chosen(*id))
+            .collect();
         let mut list = cut_parts(&parted, &crossing);
-        if !list.iter().all(|cut| cut.iter().any(|&id| is_chosen(id))) {
+        let label = |node: u32| parted.label[node as usize];
+        let joined = own.iter().map(|(_, (a, b))| (label(*a), label(*b)));
+        if list.len() + components(parted.count, joined).count != parted.count {
             // Sources alone hold an island, which floats freely once they are open.
-            let own: Vec<PartEdge> = crossing
-                .into_iter()
-                .filter(|(id, _)| is_chosen(*id))
-                .collect();
             list = cut_parts(&parted, &own);
         }
         for cut in &mut list {

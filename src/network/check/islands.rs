@@ -38,12 +38,12 @@ pub(super) fn reference(wiring: &Wiring<'_>) -> Option<Diagnostic> {
     Some(Diagnostic::error(first.place, message).help(help))
 }
 
-/// Islands, cut-sets of current sources, nodes whose voltage nothing determines.
-pub(super) fn faults(wiring: &Wiring<'_>) -> Vec<Diagnostic> {
+/// Islands, cut-sets of current sources, nodes whose voltage nothing determines; nothing is said of
+/// nodes that are marked as told.
+pub(super) fn faults(wiring: &Wiring<'_>, mut told: Vec<bool>) -> Vec<Diagnostic> {
     if is_held_by_two_ended_parts(wiring) {
         return Vec::new();
     }
-    let mut told = vec![false; wiring.nodes()];
     let rest = |more| format!("and {more} more such places");
     let mut found = Vec::new();
 

@@ -11,6 +11,11 @@ fn errors(sketch: Sketch) -> Vec<String> {
         .collect()
 }
 
+fn errors_of(network: &Network) -> Vec<Diagnostic> {
+    let found = check(network).into_iter();
+    found.filter(Diagnostic::is_error).collect()
+}
+
 fn only(sketch: Sketch) -> Diagnostic {
     let mut found = check(&sketch.finish());
     assert_eq!(found.len(), 1, "{found:?}");
@@ -226,12 +231,40 @@ fn parts_on_one_node_are_warned_of() {
 }
 
 #[test]
-fn parts_taken_out_do_not_conduct() {
+fn an_island_by_parts_taken_out_is_a_fault_only_where_it_is_asked_about() {
     let sketch = Sketch::of("Vs in ground; R1 in a; R2 a b");
     let r1 = sketch.id("R1");
     let network = sketch.finish();
-    assert!(faults(&network, &[]).is_empty());
-    assert_eq!(faults(&network, &[r1]).len(), 1);
+    assert!(check(&network).is_empty());
+    assert!(faults(&network, &[r1], &[]).is_empty());
+    let (a, ground) = (NodeId::at(2), NodeId::GROUND);
+    let found = faults(
+        &network,
+        &[r1],
+        &[Port {
+            from: a,
+            to: ground,
+        }],
+    );
+    assert_eq!(
+        found[0].message,
+        "nodes a and b (R2) have no conducting path to ground"
+    );
+}
+
+#[test]
+fn a_driving_point_across_a_source_is_an_error_that_offers_without() {
+    let mut sketch = Sketch::of("Vs in ground; M1 in a; R1 a ground");
+    sketch.ask_impedance("Zi", ["a", "ground"], &[]);
+    let found = only(sketch);
+    assert_eq!(
+        found.message,
+        "Vs and M1 join the two nodes of Zi: its sources at zero, the port is shorted"
+    );
+    assert_eq!(found.help.as_deref(), Some("add without Vs"));
+    let mut sketch = Sketch::of("Vs in ground; M1 in a; R1 a ground");
+    sketch.ask_impedance("Zi", ["a", "ground"], &["Vs"]);
+    assert!(is_sound(sketch));
 }
 
 #[test]
@@ -247,7 +280,7 @@ fn a_passive_network_is_faulty_exactly_where_its_determinant_is_zero() {
     let mut singular = 0;
     for seed in 0..1500 {
         let network = passive(&mut Dice(seed << 20)).finish();
-        let found = faults(&network, &[]);
+        let found = errors_of(&network);
         let solvable = degrees(&network, &[], seed).is_some();
         assert_eq!(found.is_empty(), solvable, "seed {seed}: {found:?}");
         singular += usize::from(!solvable);
@@ -260,7 +293,7 @@ fn an_active_network_with_a_fault_has_no_solution() {
     let (mut caught, mut missed, mut sound) = (0, 0, 0);
     for seed in 0..4000 {
         let network = active(&mut Dice(seed << 20)).finish();
-        let found = faults(&network, &[]);
+        let found = errors_of(&network);
         match (found.is_empty(), degrees(&network, &[], seed)) {
             (false, Some(_)) => panic!(
                 "seed {seed}: {found:?} {:?}",
