@@ -317,6 +317,7 @@ impl Diagram {
                     count += 1;
                 }
             }
+            alive.resize(layer.states, false);
             layer.arcs.retain(|arc| alive[arc.to as usize]);
             for arc in &mut layer.arcs {
                 arc.to = number[arc.to as usize];

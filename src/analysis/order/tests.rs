@@ -1,4 +1,9 @@
 use super::*;
+use crate::algebra::{PrimeField, UnivariateRing};
+use crate::analysis::determinant::Determinant;
+use crate::analysis::point::{Choice, Point};
+use crate::analysis::setup::{Frame, Insertion};
+use crate::budget::Budget;
 use crate::network::Element;
 use crate::network::oracle::degrees;
 use crate::network::scatter::{Dice, active, passive};
@@ -361,4 +366,61 @@ fn a_long_ladder_with_a_loop_in_each_section_is_counted_fast() {
     let order = ledger(&network, &[], counted.order, counted.static_modes);
     adds_up(&order);
     assert!(order.capacitor_loops.iter().all(|around| around.len() == 3));
+}
+
+/// Degree and lowest power by the determinant over spanning trees, with parts taken out.
+fn by_trees(network: &Network, without: &[ElementId], seed: u64) -> Option<(u32, u32)> {
+    let field = PrimeField::default_prime();
+    let choice = Choice {
+        seed,
+        shift: 0,
+        released: &|_| false,
+        salt: None,
+    };
+    let point = (0..20).find_map(|more| {
+        let seed = seed + 1000 * more;
+        Point::new(network, &field, &Choice { seed, ..choice })
+    })?;
+    let frame = Frame::without(without);
+    let built = Determinant::build(network, &frame, &Insertion::None, &Budget::unlimited());
+    let ring = UnivariateRing { field };
+    let value = built.ok()?.ok()?.value(&ring, &point).ok()?;
+    let coefficients = value.coefficients();
+    let high = coefficients.iter().rposition(|&c| c != 0)?;
+    let low = coefficients.iter().position(|&c| c != 0)?;
+    Some((number(high), number(low)))
+}
+
+#[test]
+fn ledgers_fit_determinants_with_parts_taken_out() {
+    let (mut solved, mut passive_solved) = (0, 0);
+    for seed in 0..3000 {
+        let mut dice = Dice(seed << 24);
+        let drawn = if seed % 2 == 0 {
+            active(&mut dice)
+        } else {
+            passive(&mut dice)
+        };
+        let network = drawn.finish();
+        let count = network.elements().len();
+        let without: Vec<ElementId> = (0..2).map(|_| ElementId::at(dice.roll(count))).collect();
+        let Some((degree, valuation)) = by_trees(&network, &without, seed) else {
+            continue;
+        };
+        let order = ledger(&network, &without, degree, valuation);
+        adds_up(&order);
+        solved += 1;
+        if seed % 2 == 1 {
+            passive_solved += 1;
+            assert_eq!(
+                (order.constraints, order.integrators),
+                (0, 0),
+                "seed {seed}"
+            );
+        }
+    }
+    assert!(
+        solved > 500 && passive_solved > 300,
+        "{solved} {passive_solved}"
+    );
 }
