@@ -10,13 +10,13 @@ mod transformers;
 use std::collections::{BTreeMap, BTreeSet};
 use std::rc::Rc;
 
+use super::passive::is_tight;
 use super::topology::{PartEdge, Parts, closed, cut_parts, ends};
-use crate::algebra::Rational;
 use crate::analysis::report::ConstraintEvidence;
 use crate::network::check::{list, part_names};
 use crate::network::incidence::components;
 use crate::network::topology::sensed_currents;
-use crate::network::{Element, ElementId, Kind, Network, RelationId, Strength, Value};
+use crate::network::{Element, ElementId, Kind, Network, RelationId};
 
 /// At most `constraints` pieces of evidence, each for one state.
 pub(super) fn evidence(
@@ -156,16 +156,12 @@ impl Search<'_> {
         let network = self.parts.network;
         let mut sets = petgraph::unionfind::UnionFind::<usize>::new(network.elements().len());
         for coupling in network.couplings() {
-            let tight = match &coupling.strength {
-                Strength::Factor(Value::Number(number)) => number.abs() == Rational::from(1_i64),
-                Strength::Factor(Value::Symbol(_)) | Strength::Mutual(_) => false,
-            };
             let coils = [coupling.first, coupling.second];
             let apart = coils.iter().all(|&coil| {
                 let stays = self.parts.has(coil);
                 stays && self.is_apart(coil)
             });
-            if tight && apart && sets.union(coils[0].index(), coils[1].index()) {
+            if is_tight(coupling) && apart && sets.union(coils[0].index(), coils[1].index()) {
                 let coils = coils.map(|coil| network.element(coil).name.clone());
                 let clause = format!(
                     "{} with k = 1 gives {} and {} one common flux",

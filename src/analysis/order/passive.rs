@@ -3,8 +3,9 @@
 use petgraph::unionfind::UnionFind;
 
 use super::topology::ends;
+use crate::algebra::Rational;
 use crate::network::incidence::Ends;
-use crate::network::{Kind, Network};
+use crate::network::{Coupling, Kind, Network, Strength, Value};
 
 /// Degree and lowest power of s of a passive determinant.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -24,6 +25,9 @@ pub struct PassiveOrder {
 /// Cost: all but linear in the number of parts.
 #[must_use]
 pub fn passive_order(network: &Network) -> Option<PassiveOrder> {
+    if network.couplings().iter().any(is_tight) {
+        return None;
+    }
     let mut sorts = Sorts::default();
     for (_, element) in network.elements() {
         let list = match &element.kind {
@@ -66,6 +70,14 @@ struct Sorts {
     resistive: Vec<Ends>,
     capacitors: Vec<Ends>,
     inductors: Vec<Ends>,
+}
+
+/// Whether a coupling has |k| = 1 by its own number.
+pub(super) fn is_tight(coupling: &Coupling) -> bool {
+    match &coupling.strength {
+        Strength::Factor(Value::Number(number)) => number.abs() == Rational::one(),
+        Strength::Factor(Value::Symbol(_)) | Strength::Mutual(_) => false,
+    }
 }
 
 /// How many of the edges join two sets.

@@ -1,13 +1,13 @@
 use super::*;
-use crate::algebra::{PrimeField, UnivariateRing};
+use crate::algebra::{Fraction, PrimeField, UnivariateRing};
 use crate::analysis::determinant::Determinant;
 use crate::analysis::point::{Choice, Point};
 use crate::analysis::setup::{Frame, Insertion};
 use crate::budget::Budget;
-use crate::network::Element;
 use crate::network::oracle::degrees;
 use crate::network::scatter::{Dice, active, passive};
 use crate::network::sketch::Sketch;
+use crate::network::{Element, Origin, RelationId};
 
 fn of(sketch: Sketch) -> (NetworkOrder, Network) {
     let network = sketch.finish();
@@ -197,6 +197,28 @@ fn a_tight_coupling_takes_one_state() {
     );
     let (order, _) = of(Sketch::of(network).coupling("T1", ["L1", "L2"], false));
     assert_eq!((order.network, order.constraints), (2, 0));
+}
+
+#[test]
+fn a_tight_coupling_is_not_counted_as_passive() {
+    let network = "Vs in ground; R1 in a; L1 a ground; L2 b ground; R2 b ground";
+    let draw = |tight| Sketch::of(network).coupling("T1", ["L1", "L2"], tight);
+    assert_eq!(passive_order(&draw(true).finish()), None);
+    let counted = passive_order(&draw(false).finish()).unwrap();
+    assert_eq!((counted.order, counted.static_modes), (2, 0));
+}
+
+#[test]
+fn relations_that_take_a_state_are_found_by_release() {
+    let sketch = Sketch::of("R1 a ground; C1 a ground; C2 a ground");
+    let network = sketch
+        .relation(&[("C2", Fraction::zero())], Origin::Part)
+        .relation(&[("R1", Fraction::one())], Origin::Part)
+        .finish();
+    let degree = |id: RelationId| Some(if id.index() == 0 { 1 } else { 0 });
+    let found = released(&network, 0, 1, degree);
+    assert_eq!(found.len(), 1);
+    assert_eq!(found[0].clause, "without relation the order would be 1");
 }
 
 #[test]
