@@ -97,13 +97,13 @@ pub fn runs<S: AsRef<str>>(names: &[S]) -> Vec<String> {
 
 /// Whether a name is the one before it with its number raised by one.
 fn follows(before: &str, name: &str) -> bool {
-    let split = |text: &str| {
-        let stem = text.trim_end_matches(|letter: char| letter.is_ascii_digit());
-        let number: Option<u64> = text[stem.len()..].parse().ok();
-        (stem.to_owned(), number)
-    };
-    let ((stem, number), (next_stem, next)) = (split(before), split(name));
+    let ((stem, number), (next_stem, next)) = (stem_and_number(before), stem_and_number(name));
     stem == next_stem && number.is_some() && number.and_then(|it| it.checked_add(1)) == next
+}
+
+fn stem_and_number(name: &str) -> (&str, Option<u64>) {
+    let stem = name.trim_end_matches(|letter: char| letter.is_ascii_digit());
+    (stem, name[stem.len()..].parse().ok())
 }
 
 /// Digits in groups of three with blanks: `12 345`.
