@@ -47,13 +47,14 @@ pub(crate) fn active(dice: &mut Dice) -> Sketch {
         let [a, b, c, d] = [(); 4].map(|()| dice.node(nodes));
         let sensed = sketch.any(dice.roll(count));
         let out = if a == "ground" { "n1" } else { &a };
-        sketch = match dice.roll(8) {
+        sketch = match dice.roll(9) {
             0 => sketch.by_voltage(&format!("V_{at}"), [&a, &b], [&c, &d]),
             1 => sketch.by_voltage(&format!("I_{at}"), [&a, &b], [&c, &d]),
             2 => sketch.by_current(&format!("V_{at}"), [&a, &b], &sensed),
             3 => sketch.by_current(&format!("I_{at}"), [&a, &b], &sensed),
             4 | 5 => sketch.opamp(&format!("U_{at}"), &b, &c, out),
-            6 => sketch.transformer(&format!("T_{at}"), [&a, &b], [&c, &d]),
+            6 => sketch.follower(&format!("V_{at}"), &b, out),
+            7 => sketch.transformer(&format!("T_{at}"), [&a, &b], [&c, &d]),
             _ => sketch.conveyor(&format!("X_{at}"), [&a, &b, &c, "ground"]),
         };
     }

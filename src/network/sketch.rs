@@ -205,6 +205,16 @@ impl Sketch {
         self
     }
 
+    /// A voltage source against ground that follows a node with gain 1.
+    pub(crate) fn follower(self, name: &str, input: &str, output: &str) -> Self {
+        let mut sketch = self.by_voltage(name, [output, "ground"], [input, "ground"]);
+        let id = sketch.parts[name];
+        if let Kind::Source(source) = &mut sketch.builder.element_mut(id).kind {
+            source.controls[0].value = Value::one();
+        }
+        sketch
+    }
+
     /// An ideal operational amplifier against ground.
     pub(crate) fn opamp(mut self, name: &str, plus: &str, minus: &str, out: &str) -> Self {
         let input = self.port(plus, minus);

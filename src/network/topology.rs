@@ -10,6 +10,7 @@ use std::collections::BTreeSet;
 
 use smallvec::SmallVec;
 
+use crate::algebra::Rational;
 use crate::network::element::{Control, Element, Kind, Port, Quantity, Sense, Source};
 use crate::network::id::{ElementId, NodeId};
 use crate::network::value::Value;
@@ -97,7 +98,7 @@ impl Element {
     }
 
     /// The forced edge in the voltage graph: a node pair that the part holds at zero volts when
-    /// the independent sources are zero.
+    /// the independent sources are zero; for a follower of gain exactly 1 its input and output.
     #[must_use]
     pub fn forced_voltage(&self) -> Option<Port> {
         match &self.kind {
@@ -107,8 +108,12 @@ impl Element {
             } => Some(*input),
             Kind::Conveyor { x, y, .. } => Some(port(*x, *y)),
             Kind::Source(source) if source.quantity == Quantity::Voltage => {
-                let senses = source.controls.iter().any(Control::acts);
-                (!senses).then_some(source.port)
+                let mut acting = source.controls.iter().filter(|control| control.acts());
+                match (acting.next(), acting.next()) {
+                    (None, _) => Some(source.port),
+                    (Some(only), None) => equal_ends(source.port, only),
+                    (Some(_), Some(_)) => None,
+                }
             }
             _ => None,
         }
@@ -177,6 +182,30 @@ pub fn sensed_currents<'a>(parts: impl Iterator<Item = &'a Element>) -> BTreeSet
             Sense::Voltage(_) => None,
         })
         .collect()
+}
+
+/// The nodes that a source of gain 1 holds at one voltage, where its ends and what it senses share
+/// a node: v(x,r) = v(a,r) is v(x,a) = 0.
+fn equal_ends(driven: Port, control: &Control) -> Option<Port> {
+    let sensed = control.sensed_pair()?;
+    let Value::Number(gain) = &control.value else {
+        return None;
+    };
+    let gain = gain * &control.factor;
+    let sensed = if gain == Rational::one() {
+        sensed
+    } else if gain == -Rational::one() {
+        port(sensed.to, sensed.from)
+    } else {
+        return None;
+    };
+    if driven.to == sensed.to {
+        Some(port(driven.from, sensed.from))
+    } else if driven.from == sensed.from {
+        Some(port(driven.to, sensed.to))
+    } else {
+        None
+    }
 }
 
 fn source_voltage_edges(source: &Source) -> Edges {

@@ -155,6 +155,7 @@ impl Search<'_> {
     fn tight_couplings(&mut self) {
         let network = self.parts.network;
         let mut sets = petgraph::unionfind::UnionFind::<usize>::new(network.elements().len());
+        let mut found = Vec::new();
         for coupling in network.couplings() {
             let coils = [coupling.first, coupling.second];
             let apart = coils.iter().all(|&coil| {
@@ -168,12 +169,12 @@ impl Search<'_> {
                     coupling.name, coils[0], coils[1]
                 );
                 let [first, second] = coils;
-                self.found.push(ConstraintEvidence {
-                    names: vec![coupling.name.clone(), first, second],
-                    clause,
-                });
+                let names = vec![coupling.name.clone(), first, second];
+                let members = vec![coupling.first, coupling.second];
+                found.push((members, ConstraintEvidence { names, clause }));
             }
         }
+        self.tell(found);
     }
 
     /// Loops of capacitors and outputs of fixed voltage. A sensed capacitor is in series with a

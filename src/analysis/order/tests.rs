@@ -173,6 +173,15 @@ fn equal_inputs_hold_a_capacitor() {
 }
 
 #[test]
+fn a_capacitor_bootstrapped_by_a_follower_is_no_state() {
+    let sketch = Sketch::of("Vs in ground; R1 in a; C1 a b; RL b ground").follower("V2", "a", "b");
+    let (order, _) = of(sketch);
+    adds_up(&order);
+    assert_eq!((order.network, order.constraints), (0, 1));
+    assert_eq!(clauses(&order), ["V2 holds the voltage of C1"]);
+}
+
+#[test]
 fn a_controlled_current_sets_an_inductor() {
     let sketch = Sketch::of("Vs in ground; R1 in a; C1 a ground; L1 b ground; R2 c ground; L2 b c")
         .by_voltage("I2", ["b", "ground"], ["a", "ground"]);

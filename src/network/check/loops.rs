@@ -43,7 +43,7 @@ impl<'a> Forced<'a> {
             .iter()
             .filter_map(|&(id, element)| {
                 let port = edge(id, element)?;
-                Some((element.port().is_none(), (id, element), port))
+                Some((!element.is_short(), (id, element), port))
             })
             .collect();
         list.sort_by_key(|(device, ..)| *device);
@@ -135,37 +135,35 @@ fn equal_loop(wiring: &Wiring<'_>, found: &Loop<'_>) -> Option<Diagnostic> {
         .parts
         .iter()
         .map(|(_, element)| *element)
-        .partition(|element| element.port().is_none());
+        .partition(|element| !element.is_short());
     let Some(&first) = holders.first() else {
         let sensed = found.parts.iter().any(|(id, _)| wiring.sensed.contains(id));
         return sensed.then(|| source_loop(wiring, found));
     };
     let name = part_name(network, first);
     let nodes = node_list(network, &found.nodes);
-    let inputs = match first.kind {
+    let ends = match first.kind {
         Kind::Conveyor { .. } => "x and y",
+        Kind::Source(_) => "input and output",
         _ => "+ and -",
     };
     let message = if found.parts.len() == 1 {
-        format!("{inputs} of {name} are both connected to {nodes}, so its output is undetermined")
+        format!("{ends} of {name} are both connected to {nodes}, so its output is undetermined")
     } else {
         let mut names: Vec<String> = holders[1..]
             .iter()
-            .map(|part| format!("the equal inputs of {}", part_name(network, part)))
+            .map(|part| format!("the equal ends of {}", part_name(network, part)))
             .collect();
         names.extend(fixed.iter().map(|part| part.name.clone()));
+        let verb = if names.len() == 1 && fixed.len() == 1 {
+            "fixes"
+        } else {
+            "fix"
+        };
         format!(
-            "{name} is to hold {inputs} at one voltage, but {} fix that voltage already \
+            "{name} is to hold its {ends} at one voltage, but {} {verb} that voltage already \
              (through {nodes})",
             list(&names)
-        )
-        .replace(
-            "fix that",
-            if names.len() == 1 && holders.len() == 1 {
-                "fixes that"
-            } else {
-                "fix that"
-            },
         )
     };
     fixed.insert(0, first);

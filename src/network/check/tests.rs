@@ -157,9 +157,9 @@ fn inputs_that_cannot_move_fail() {
     let sketch = Sketch::of("Vs in ground; R1 in out").opamp("U1", "in", "ground", "out");
     let found = only(sketch);
     assert!(
-        found
-            .message
-            .starts_with("U1 is to hold + and - at one voltage, but Vs fixes that voltage already"),
+        found.message.starts_with(
+            "U1 is to hold its + and - at one voltage, but Vs fixes that voltage already"
+        ),
         "{}",
         found.message
     );
@@ -169,6 +169,21 @@ fn inputs_that_cannot_move_fail() {
             .message
             .starts_with("+ and - of U1 are both connected to node in")
     );
+}
+
+#[test]
+fn a_follower_across_its_own_output_fails() {
+    let sketch = Sketch::of("Vs in ground; R1 in a; R2 b ground; M1 a b").follower("V2", "a", "b");
+    let found = only(sketch);
+    assert!(
+        found
+            .message
+            .starts_with("V2 is to hold its input and output at one voltage, but M1 fixes"),
+        "{}",
+        found.message
+    );
+    let sketch = Sketch::of("Vs in ground; R1 in a; R2 b ground; R3 a b").follower("V2", "a", "b");
+    assert!(is_sound(sketch));
 }
 
 #[test]
