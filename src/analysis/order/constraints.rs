@@ -182,8 +182,7 @@ impl Search<'_> {
     fn outputs(&mut self) {
         let mut fixed = self.parts.shorts();
         fixed.extend(self.outputs_fixed());
-        let holds = |element: &Element| !element.is_short();
-        let mut found = self.extra_loops(fixed, holds, "sets");
+        let mut found = self.extra_loops(fixed, "sets");
         if !self.sensed.is_empty() {
             let apart = |part: &ElementId| self.is_apart(*part) && !self.sensed.contains(part);
             found.retain(|(members, _)| members.iter().all(apart));
@@ -206,21 +205,20 @@ impl Search<'_> {
             self.parts
                 .edges(|_, element| element.forced_voltage().filter(|_| !element.is_short())),
         );
-        let holds = |element: &Element| !element.is_short();
-        let mut found = self.extra_loops(fixed, holds, "holds");
+        let mut found = self.extra_loops(fixed, "holds");
         if !self.told.is_empty() {
             found.retain(|(members, _)| members.iter().all(|&part| self.is_apart(part)));
         }
         self.tell(found);
     }
 
-    /// Loops of capacitors over `fixed` that need a part for which `holds` is true.
+    /// Loops of capacitors over `fixed` that need more than sources and meters.
     fn extra_loops(
         &self,
         fixed: Vec<PartEdge>,
-        holds: impl Fn(&Element) -> bool,
         one: &'static str,
     ) -> Vec<(Vec<ElementId>, ConstraintEvidence)> {
+        let holds = |element: &Element| !element.is_short();
         let capacitors = self.capacitors();
         if capacitors.is_empty() || !fixed.iter().any(|(id, _)| holds(self.element(*id))) {
             return Vec::new();
