@@ -178,6 +178,21 @@ fn rule_of(form: Form) -> Rule {
     }
 }
 
+/// Reads a nominal value that stands outside a file; places are all `place`.
+pub(crate) fn value(place: Span, text: &str) -> Result<PartValue, Box<Diagnostic>> {
+    let failed = || Box::new(Diagnostic::error(place, "this is not a value"));
+    let mut pairs = Grammar::parse(Rule::only_value, text.trim()).map_err(|_| failed())?;
+    let pair = pairs.next().ok_or_else(failed)?;
+    let reader = Reader {
+        source: place.source,
+        base: 0,
+        text,
+    };
+    let mut value = reader.part_value(pair)?;
+    value.place = place;
+    Ok(value)
+}
+
 /// Whether a text is a whole expression.
 pub(crate) fn is_expression(text: &str) -> bool {
     let wrapped = format!("x = {text}");
