@@ -30,7 +30,7 @@ struct Forced<'a> {
 
 type Part<'a> = (ElementId, &'a Element);
 
-/// The parts of a loop, from the one that closes it on, and the nodes between them.
+/// The parts of a loop, from the one that closes it on, and its nodes, the reference last.
 struct Loop<'a> {
     parts: Vec<Part<'a>>,
     nodes: Vec<NodeId>,
@@ -81,6 +81,7 @@ impl<'a> Forced<'a> {
             let (a, b) = self.edges[edge as usize];
             at = if a == at { b } else { a };
         }
+        nodes.sort_unstable_by_key(|&node| (node == NodeId::GROUND, node));
         Loop {
             parts: list.iter().map(|&edge| self.parts[edge as usize]).collect(),
             nodes,
