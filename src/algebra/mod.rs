@@ -11,6 +11,7 @@ pub mod monomial;
 pub mod polynomial;
 pub mod prime_field;
 pub mod rational;
+pub mod resultant;
 pub mod ring;
 pub mod sign;
 pub mod symbol;

@@ -1,6 +1,7 @@
 //! Claims proven or refuted by exact means.
 
 use crate::algebra::{Fraction, Polynomial, Rational, Symbol};
+use crate::analysis::couplings::Couplings;
 use crate::analysis::knowledge::Knowledge;
 use crate::analysis::relations::Substitution;
 use crate::analysis::report::{
@@ -17,6 +18,8 @@ pub(crate) struct Evidence<'a> {
     pub(crate) network: &'a Network,
     /// Its relations.
     pub(crate) substitution: &'a Substitution,
+    /// Mutual inductances of couplings given by their factor.
+    pub(crate) couplings: &'a Couplings,
     /// Its signs.
     pub(crate) knowledge: &'a Knowledge<'a>,
     /// Its order.
@@ -71,7 +74,9 @@ impl Evidence<'_> {
     fn resolve(&self, expression: &Fraction) -> Result<Option<Fraction>, Exceeded> {
         expression.substitute(
             &|symbol| {
-                (self.function)(symbol).or_else(|| Some(self.substitution.value(symbol)))
+                (self.function)(symbol)
+                    .or_else(|| self.couplings.expression(symbol))
+                    .or_else(|| Some(self.substitution.value(symbol)))
             },
             self.budget,
         )
@@ -106,7 +111,7 @@ impl Evidence<'_> {
                 Verdict::No,
                 vec![
                     note("claimed", "an expression that divides by zero under the relations"),
-                    formula("found", &found),
+                    self.formula("found", &found),
                 ],
             ));
         };
@@ -115,9 +120,9 @@ impl Evidence<'_> {
         }
         let difference = claimed.add(&found.neg(), self.budget)?;
         let mut findings = vec![
-            formula("claimed", &claimed),
-            formula("found", &found),
-            formula("difference", &difference),
+            self.formula("claimed", &claimed),
+            self.formula("found", &found),
+            self.formula("difference", &difference),
         ];
         findings.extend(self.counterexample(&claimed, &found, &difference));
         Ok((Verdict::No, findings))
@@ -163,6 +168,18 @@ impl Evidence<'_> {
         None
     }
 
+    /// A line of evidence with a quotient, written without roots.
+    fn formula(&self, label: &str, fraction: &Fraction) -> Finding {
+        let pair = self
+            .couplings
+            .written(fraction.numerator(), fraction.denominator());
+        Finding {
+            label: label.to_owned(),
+            text: None,
+            formula: Some(pair),
+        }
+    }
+
     fn order_of(&self, subject: Subject, claimed: &Rational) -> Decision {
         match subject {
             Subject::Network => count(claimed, self.order.network),
@@ -190,7 +207,7 @@ impl Evidence<'_> {
             }
             (Some(found), ClaimedValue::Infinite) => Ok((
                 Verdict::No,
-                vec![note("claimed", "infinite"), formula("found", &found)],
+                vec![note("claimed", "infinite"), self.formula("found", &found)],
             )),
             (Some(found), ClaimedValue::Value(value)) => {
                 if !self.is_known(value) {
@@ -264,14 +281,14 @@ impl Evidence<'_> {
             Side::Numerator => "numerator",
             Side::Denominator => "denominator",
         };
-        let mut findings = vec![formula("claimed", &value)];
+        let mut findings = vec![self.formula("claimed", &value)];
         findings.push(Finding {
             label: word.to_owned(),
             text: None,
             formula: Some((polynomial.clone(), Polynomial::one())),
         });
         if let Some(at) = at {
-            findings.push(formula(&format!("{word} there"), &at));
+            findings.push(self.formula(&format!("{word} there"), &at));
         }
         Ok((Verdict::No, findings))
     }
@@ -382,10 +399,3 @@ fn note(label: impl Into<String>, text: impl Into<String>) -> Finding {
     }
 }
 
-fn formula(label: &str, fraction: &Fraction) -> Finding {
-    Finding {
-        label: label.to_owned(),
-        text: None,
-        formula: Some((fraction.numerator().clone(), fraction.denominator().clone())),
-    }
-}

@@ -140,6 +140,11 @@ impl Couplings {
         });
     }
 
+    /// Root symbol of each inductance that has one.
+    pub(crate) fn roots(&self) -> &BTreeMap<Symbol, Symbol> {
+        &self.roots
+    }
+
     /// M of a coupling given by its factor.
     pub(crate) fn mutual(&self, index: usize) -> Option<&Fraction> {
         self.mutual.get(index)?.as_ref()

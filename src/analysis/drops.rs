@@ -2,7 +2,8 @@
 
 use std::collections::BTreeSet;
 
-use crate::algebra::Polynomial;
+use crate::algebra::{Polynomial, SymbolTable};
+use crate::analysis::normal::with_positive_lead;
 use crate::algebra::factor::factor;
 use crate::analysis::knowledge::Knowledge;
 use crate::analysis::report::{Drop, Verdict};
@@ -15,6 +16,7 @@ use crate::budget::{Budget, Exceeded};
 pub(crate) fn drops(
     leading: &Polynomial,
     knowledge: &Knowledge<'_>,
+    names: &SymbolTable,
     budget: &Budget,
 ) -> Result<(Vec<Drop>, BTreeSet<String>), Exceeded> {
     if leading.is_constant() {
@@ -22,7 +24,7 @@ pub(crate) fn drops(
     }
     if let Some(judgement) = knowledge.judge(leading) {
         if judgement.sign.is_never_zero() {
-            return Ok((vec![never(leading)], judgement.relied_on));
+            return Ok((vec![never(leading, names)], judgement.relied_on));
         }
     }
     let mut open = Vec::new();
@@ -42,19 +44,19 @@ pub(crate) fn drops(
             } else {
                 Verdict::Undecided
             },
-            condition,
+            condition: with_positive_lead(&condition, names),
             example: example.unwrap_or_default(),
         });
     }
     if open.is_empty() {
-        open.push(never(leading));
+        open.push(never(leading, names));
     }
     Ok((open, relied_on))
 }
 
-fn never(leading: &Polynomial) -> Drop {
+fn never(leading: &Polynomial, names: &SymbolTable) -> Drop {
     Drop {
-        condition: leading.clone(),
+        condition: with_positive_lead(leading, names),
         possible: Verdict::No,
         example: Vec::new(),
     }

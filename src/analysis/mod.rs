@@ -1,11 +1,22 @@
 //! Exact answers about a network.
 
+mod answer;
 mod assembly;
 mod block;
+mod cancellation;
+mod claim;
 pub mod contraction;
 mod couplings;
 pub mod determinant;
 mod diagram;
+mod drops;
+mod effect;
+mod equations;
+mod functions;
+mod hidden;
+mod knowledge;
+mod line;
+mod nest;
 pub mod normal;
 pub mod order;
 mod ordering;
@@ -15,4 +26,8 @@ mod relations;
 pub mod report;
 pub mod setup;
 pub mod singular;
+mod solve;
 mod symbolic;
+mod witness;
+
+pub use answer::answer;

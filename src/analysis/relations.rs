@@ -2,7 +2,7 @@
 
 use std::collections::{BTreeMap, BTreeSet};
 
-use crate::algebra::{Fraction, Symbol};
+use crate::algebra::{Fraction, Symbol, SymbolTable};
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Network, RelationId};
 
@@ -25,6 +25,43 @@ impl Substitution {
                         substitution.values.insert(*symbol, resolved);
                     }
                     None => substitution.undefined.push(id),
+                }
+            }
+        }
+        Ok(substitution)
+    }
+
+    /// Every relation released: a relation with s keeps its form over fresh copies of its parameters.
+    pub(crate) fn released(
+        network: &Network,
+        table: &mut SymbolTable,
+        copies: &mut BTreeMap<Symbol, (RelationId, Symbol)>,
+        budget: &Budget,
+    ) -> Result<Self, Exceeded> {
+        let mut substitution = Self::default();
+        for (id, relation) in network.relations() {
+            if !relation.has_s() {
+                continue;
+            }
+            let mut own: BTreeMap<Symbol, Symbol> = BTreeMap::new();
+            for (symbol, value) in &relation.sets {
+                for parameter in value.symbols() {
+                    if parameter == Symbol::S || parameter == Symbol::PI {
+                        continue;
+                    }
+                    own.entry(parameter).or_insert_with(|| {
+                        let name = table.name(parameter).to_owned();
+                        let copy = table.fresh(&name);
+                        copies.insert(copy, (id, parameter));
+                        copy
+                    });
+                }
+                let renamed = value.substitute(
+                    &|found| own.get(&found).map(|copy| Fraction::symbol(*copy)),
+                    budget,
+                )?;
+                if let Some(renamed) = renamed {
+                    substitution.values.insert(*symbol, renamed);
                 }
             }
         }

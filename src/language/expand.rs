@@ -502,12 +502,11 @@ impl<'a> Expander<'a> {
                 self.errors.push(error);
                 continue;
             }
-            let given = if option.exactly {
-                Given::Exactly(option.value, Rc::clone(scope))
-            } else if has_name(&option.value) {
-                Given::Outer(option.value, Rc::clone(scope))
-            } else {
-                Given::Own(Some(option.value))
+            let given = match option.value {
+                None => Given::Own(None),
+                Some(value) if option.exactly => Given::Exactly(value, Rc::clone(scope)),
+                Some(value) if has_name(&value) => Given::Outer(value, Rc::clone(scope)),
+                Some(value) => Given::Own(Some(value)),
             };
             made.parameters.insert(name, given);
         }
@@ -721,7 +720,10 @@ fn fill(kind: StatementKind, names: &Names) -> Filled<StatementKind> {
                 .map(|option| {
                     Ok(OptionValue {
                         name: option.name,
-                        value: fill_expression(option.value, names)?,
+                        value: option
+                            .value
+                            .map(|value| fill_expression(value, names))
+                            .transpose()?,
                         exactly: option.exactly,
                     })
                 })

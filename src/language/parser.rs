@@ -842,13 +842,13 @@ impl Reader<'_> {
                 _ => value = Some(self.expression(inner)?),
             }
         }
-        match (name, value) {
-            (Some(name), Some(value)) => Ok(OptionValue {
+        match name {
+            Some(name) => Ok(OptionValue {
                 name,
                 value,
                 exactly,
             }),
-            _ => Err(Box::new(Diagnostic::error(place, "an option has a value"))),
+            None => Err(Box::new(Diagnostic::error(place, "an option has a name"))),
         }
     }
 

@@ -290,8 +290,8 @@ pub struct Terminal {
 pub struct OptionValue {
     /// Name.
     pub name: Name,
-    /// Value.
-    pub value: Expression,
+    /// Value; without one the option is a symbol of its own.
+    pub value: Option<Expression>,
     /// `exactly`.
     pub exactly: bool,
 }

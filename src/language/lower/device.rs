@@ -377,18 +377,22 @@ impl Lowering<'_> {
             .iter()
             .find(|given| plain(&given.name) == option)
             .cloned();
-        let Some(given) = given else {
+        let value = given.as_ref().and_then(|given| given.value.clone());
+        let (Some(given), Some(value)) = (given.clone(), value) else {
+            if given.is_some() {
+                return Ok(self.builder.symbols().find(&symbol_name).map(Value::Symbol));
+            }
             return Ok(match default {
                 Own => self.builder.symbols().find(&symbol_name).map(Value::Symbol),
                 Absent => None,
                 One => Some(Value::one()),
             });
         };
-        let linear = self.linear(&given.value, &waiting.scope, VALUES)?;
+        let linear = self.linear(&value, &waiting.scope, VALUES)?;
         if let (Some(found), Some(wanted)) = (linear.dimension, dimension) {
-            if found != wanted && is_literal(&given) {
+            if found != wanted && !has_name(&value) {
                 self.error(
-                    given.value.place,
+                    value.place,
                     format!("this unit does not fit {option}"),
                     format!("{option} of a {} is {}", row.name, unit_word(wanted)),
                 );
@@ -398,7 +402,7 @@ impl Lowering<'_> {
         if let Some(number) = linear.constant.as_rational() {
             return Ok(Some(Value::Number(number)));
         }
-        if !has_name(&given.value) {
+        if !has_name(&value) {
             return Err(Reported);
         }
         self.enter(&symbol_name, What::Symbol, given.name.place);
@@ -713,6 +717,7 @@ impl Lowering<'_> {
         let Some(strength) = self.strength(&own, options, scope, statement.place) else {
             return;
         };
+        self.builder.symbols().intern(&format!("M_{own}"));
         self.builder.coupling(Coupling {
             name: own,
             first: first_id,
@@ -771,13 +776,13 @@ impl Lowering<'_> {
             ("k", Dimension::NUMBER)
         };
         let symbol_name = format!("{letter}_{own}");
-        let value = match option {
+        let value = match option.and_then(|option| option.value.as_ref()) {
             None => {
                 self.enter(&symbol_name, What::Symbol, place);
                 Value::Symbol(self.new_symbol(&symbol_name, Origin::Option, Some(dimension), place))
             }
-            Some(option) => {
-                let linear = self.linear(&option.value, scope, VALUES).ok()?;
+            Some(given) => {
+                let linear = self.linear(given, scope, VALUES).ok()?;
                 match linear.constant.as_rational() {
                     Some(number) => Value::Number(number),
                     None => {
@@ -785,12 +790,12 @@ impl Lowering<'_> {
                         let symbol =
                             self.new_symbol(&symbol_name, Origin::Option, Some(dimension), place);
                         let text =
-                            format!("{symbol_name} = {}", self.spelled(&option.value, scope));
+                            format!("{symbol_name} = {}", self.spelled(given, scope));
                         self.add_relation(
                             vec![(symbol, linear.constant)],
                             text,
                             None,
-                            option.value.place,
+                            given.place,
                         );
                         Value::Symbol(symbol)
                     }
@@ -812,10 +817,6 @@ impl Lowering<'_> {
             Strength::Factor(value)
         })
     }
-}
-
-fn is_literal(option: &OptionValue) -> bool {
-    !has_name(&option.value)
 }
 
 fn unit_word(dimension: Dimension) -> &'static str {

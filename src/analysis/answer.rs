@@ -1,0 +1,327 @@
+//! Everything a run asks, in order: network, functions, claims.
+
+use std::collections::BTreeMap;
+
+use crate::algebra::{Fraction, Polynomial, Symbol, SymbolTable};
+use crate::analysis::cancellation::{Audit, audit};
+use crate::analysis::claim::Evidence;
+use crate::analysis::couplings::Couplings;
+use crate::analysis::drops::drops;
+use crate::analysis::effect;
+use crate::analysis::functions;
+use crate::analysis::knowledge::Knowledge;
+use crate::analysis::nest::nested;
+use crate::analysis::normal::leading_sign;
+use crate::analysis::order::ledger;
+use crate::analysis::relations::Substitution;
+use crate::analysis::report::{
+    Expanded, Failure, Formula, FunctionReport, NetworkOrder, Report, Wanted,
+};
+use crate::analysis::solve::{Setting, Solved, network_degrees, solve};
+use crate::analysis::witness;
+use crate::budget::{Budget, Exceeded};
+use crate::diagnostic::Diagnostic;
+use crate::network::{Ask, Network};
+
+/// Answers what is wanted of a network.
+///
+/// # Errors
+/// [`Failure::Unusable`] when the network or a question has no unique solution, [`Failure::Budget`]
+/// when not even the orders could be decided, [`Failure::Witness`] when the independent check
+/// disagrees.
+pub fn answer(network: &Network, wanted: &Wanted, budget: &Budget) -> Result<Report, Failure> {
+    let plain = Substitution::new(network, budget)?;
+    if let Some(id) = plain.undefined.first() {
+        let relation = network.relation(*id);
+        return Err(unusable(
+            Diagnostic::error(relation.place, "this relation divides by zero")
+                .help("under the other relations its divisor is zero for all values"),
+        ));
+    }
+    let mut rooted = plain.clone();
+    let mut table = network.symbols().clone();
+    let couplings = match Couplings::new(network, &mut rooted, &mut table, budget)? {
+        Ok(couplings) => couplings,
+        Err(irrational) => {
+            let coupling = &network.couplings()[irrational.coupling];
+            return Err(unusable(
+                Diagnostic::error(
+                    coupling.place,
+                    format!(
+                        "the mutual inductance of {} is no rational function of the values",
+                        coupling.name
+                    ),
+                )
+                .help("give it as M, or relate the coils by a square: L2 = n^2*L1"),
+            ));
+        }
+    };
+    let (degree, valuation) = match network_degrees(network, &[], budget)? {
+        Ok(found) => found,
+        Err(error) => return Err(unusable(*error)),
+    };
+    let order = ledger(network, &[], degree, valuation);
+    let run = Run {
+        setting: Setting {
+            network,
+            rooted: &rooted,
+            couplings: &couplings,
+            budget,
+        },
+        knowledge: Knowledge::new(network, &plain, budget)?,
+        plain: &plain,
+        table: &table,
+        order: &order,
+    };
+    run.all(wanted)
+}
+
+fn unusable(error: Diagnostic) -> Failure {
+    Failure::Unusable(vec![error])
+}
+
+struct Run<'a> {
+    setting: Setting<'a>,
+    knowledge: Knowledge<'a>,
+    plain: &'a Substitution,
+    table: &'a SymbolTable,
+    order: &'a NetworkOrder,
+}
+
+impl Run<'_> {
+    fn all(&self, wanted: &Wanted) -> Result<Report, Failure> {
+        let network = self.setting.network;
+        let mut known: BTreeMap<Symbol, Fraction> = BTreeMap::new();
+        let mut reports: Vec<FunctionReport> = Vec::new();
+        let mut errors = Vec::new();
+        let needed = functions::needed(network, wanted);
+        for (index, question) in network.questions().iter().enumerate() {
+            if !needed.contains(&index) {
+                continue;
+            }
+            let made = match solve(&self.setting, question)? {
+                Some(Ok(solved)) => self.of_network(index, &solved, &mut known)?,
+                Some(Err(error)) => {
+                    errors.push(*error);
+                    continue;
+                }
+                None => match self.of_functions(index, &mut known) {
+                    Ok(report) => report,
+                    Err(Failure::Unusable(list)) => {
+                        errors.extend(list);
+                        continue;
+                    }
+                    Err(other) => return Err(other),
+                },
+            };
+            reports.push(made);
+        }
+        if !errors.is_empty() {
+            return Err(Failure::Unusable(errors));
+        }
+        let claims = if wanted.claims {
+            self.claims(&known, &reports)?
+        } else {
+            Vec::new()
+        };
+        let results = reports
+            .into_iter()
+            .filter(|report| functions::is_wanted(&report.name, wanted))
+            .collect();
+        Ok(Report {
+            order: self.order.clone(),
+            results,
+            claims,
+            warnings: Vec::new(),
+        })
+    }
+
+    fn of_network(
+        &self,
+        index: usize,
+        solved: &Solved,
+        known: &mut BTreeMap<Symbol, Fraction>,
+    ) -> Result<FunctionReport, Failure> {
+        let network = self.setting.network;
+        let question = &network.questions()[index];
+        let degrees = solved.degrees;
+        let mut report = FunctionReport {
+            name: question.name.clone(),
+            question: index,
+            formula: Formula::Expanded(Expanded {
+                numerator: vec![Polynomial::zero()],
+                denominator: vec![Polynomial::one()],
+            }),
+            order: degrees.order,
+            numerator_order: degrees.numerator,
+            network: Some(degrees.network),
+            hidden: Some(degrees.network.saturating_sub(degrees.order)),
+            zero: degrees.zero,
+            no_effect: Vec::new(),
+            drops_when: Vec::new(),
+            cancellations: Some(Vec::new()),
+            nominals_missing: Vec::new(),
+            relied_on: Vec::new(),
+            checked_points: 0,
+        };
+        match &solved.function {
+            Ok(reduced) => {
+                known.insert(question.symbol, reduced.fraction.clone());
+                report.formula = self.written(&reduced.fraction);
+                report.checked_points =
+                    witness::check(network, index, known, self.setting.couplings)
+                        .map_err(Failure::Witness)?;
+                self.conditions(&mut report)?;
+            }
+            Err(exceeded) => {
+                report.formula = nested(&self.setting, &solved.pairing, degrees.common)
+                    .map_or(Formula::OverBudget(*exceeded), Formula::Nested);
+            }
+        }
+        if !degrees.zero && degrees.common > 0 || solved.function.is_ok() {
+            let audited = audit(&self.setting, self.plain, self.table, index, solved)?;
+            self.take_audit(&mut report, audited);
+        }
+        report.no_effect = effect::without_effect(network, index, &report, self.setting.couplings);
+        Ok(report)
+    }
+
+    fn take_audit(&self, report: &mut FunctionReport, audited: Audit) {
+        report.nominals_missing = audited.nominals_missing;
+        report.cancellations = Some(audited.cancellations);
+    }
+
+    fn of_functions(
+        &self,
+        index: usize,
+        known: &mut BTreeMap<Symbol, Fraction>,
+    ) -> Result<FunctionReport, Failure> {
+        let network = self.setting.network;
+        let question = &network.questions()[index];
+        let over = |exceeded: Exceeded| Formula::OverBudget(exceeded);
+        let value = functions::evaluate(network, question, known, self.setting.rooted, self.setting.budget);
+        let mut report = FunctionReport {
+            name: question.name.clone(),
+            question: index,
+            formula: over(Exceeded::Terms(self.setting.budget.limits().terms)),
+            order: 0,
+            numerator_order: 0,
+            network: None,
+            hidden: None,
+            zero: false,
+            no_effect: Vec::new(),
+            drops_when: Vec::new(),
+            cancellations: None,
+            nominals_missing: Vec::new(),
+            relied_on: Vec::new(),
+            checked_points: 0,
+        };
+        match value {
+            Ok(Some(fraction)) => {
+                report.order = fraction.denominator().degree(Symbol::S);
+                report.numerator_order = fraction.numerator().degree(Symbol::S);
+                report.zero = fraction.is_zero();
+                report.formula = self.written(&fraction);
+                known.insert(question.symbol, fraction);
+                if matches!(question.ask, Ask::Function(_)) {
+                    report.checked_points =
+                        witness::check(network, index, known, self.setting.couplings)
+                            .map_err(Failure::Witness)?;
+                }
+                self.conditions(&mut report)?;
+            }
+            Ok(None) => {}
+            Err(functions::Trouble::Exceeded(exceeded)) => report.formula = over(exceeded),
+            Err(functions::Trouble::Wrong(error)) => return Err(unusable(*error)),
+        }
+        Ok(report)
+    }
+
+    /// Where the order drops, with what the proofs rest on.
+    fn conditions(&self, report: &mut FunctionReport) -> Result<(), Failure> {
+        let Formula::Expanded(expanded) = &report.formula else {
+            return Ok(());
+        };
+        if report.zero {
+            return Ok(());
+        }
+        let Some(leading) = expanded.denominator.last() else {
+            return Ok(());
+        };
+        let found = drops(leading, &self.knowledge, self.setting.network.symbols(), self.setting.budget);
+        let (conditions, relied_on) = found?;
+        report.drops_when = conditions;
+        report.relied_on = relied_on.into_iter().collect();
+        Ok(())
+    }
+
+    /// A function as it is written: without roots, coprime with numbers, leading sign positive.
+    fn written(&self, fraction: &Fraction) -> Formula {
+        match self.expanded(fraction) {
+            Ok(expanded) => Formula::Expanded(expanded),
+            Err(exceeded) => Formula::OverBudget(exceeded),
+        }
+    }
+
+    fn expanded(&self, fraction: &Fraction) -> Result<Expanded, Exceeded> {
+        let (mut numerator, mut denominator) = self
+            .setting
+            .couplings
+            .written(fraction.numerator(), fraction.denominator());
+        if numerator.is_zero() {
+            return Ok(Expanded {
+                numerator: vec![Polynomial::zero()],
+                denominator: vec![Polynomial::one()],
+            });
+        }
+        let number = numerator.content().gcd(&denominator.content());
+        let monomial = numerator.monomial_content().gcd(&denominator.monomial_content());
+        let common = Polynomial::monomial(number, monomial);
+        if !common.is_one() {
+            numerator = numerator.div_exact(&common).unwrap_or(numerator);
+            denominator = denominator.div_exact(&common).unwrap_or(denominator);
+        }
+        let names = self.table;
+        let first = denominator
+            .coefficients(Symbol::S)
+            .into_iter()
+            .find(|part| !part.is_zero())
+            .unwrap_or_default();
+        if leading_sign(&first, names) < 0 {
+            numerator = -numerator;
+            denominator = -denominator;
+        }
+        Ok(Expanded {
+            numerator: numerator.coefficients(Symbol::S),
+            denominator: denominator.coefficients(Symbol::S),
+        })
+    }
+
+    fn claims(
+        &self,
+        known: &BTreeMap<Symbol, Fraction>,
+        reports: &[FunctionReport],
+    ) -> Result<Vec<crate::analysis::report::ClaimReport>, Failure> {
+        let network = self.setting.network;
+        let report_of = |symbol: Symbol| {
+            let index = network.question_of(symbol)?;
+            reports.iter().find(|report| report.question == index)
+        };
+        let function = |symbol: Symbol| known.get(&symbol).cloned();
+        let evidence = Evidence {
+            network,
+            substitution: self.setting.rooted,
+            couplings: self.setting.couplings,
+            knowledge: &self.knowledge,
+            order: self.order,
+            function: &function,
+            report: &report_of,
+            budget: self.setting.budget,
+        };
+        let mut claims = Vec::new();
+        for (index, claim) in network.claims().iter().enumerate() {
+            claims.push(evidence.decide(index, claim)?);
+        }
+        Ok(claims)
+    }
+}
