@@ -407,13 +407,13 @@ impl Lowering<'_> {
         }
         self.enter(&symbol_name, What::Symbol, given.name.place);
         let symbol = self.new_symbol(&symbol_name, Origin::Option, dimension, given.name.place);
-        let right = self.spelled(&given.value, &waiting.scope);
+        let right = self.spelled(&value, &waiting.scope);
         let text = format!("{symbol_name} = {right}");
         self.add_relation(
             vec![(symbol, linear.constant)],
             text,
             None,
-            given.value.place,
+            value.place,
         );
         Ok(Some(Value::Symbol(symbol)))
     }
