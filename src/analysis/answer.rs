@@ -199,7 +199,13 @@ impl Run<'_> {
         let network = self.setting.network;
         let question = &network.questions()[index];
         let over = |exceeded: Exceeded| Formula::OverBudget(exceeded);
-        let value = functions::evaluate(network, question, known, self.setting.rooted, self.setting.budget);
+        let value = functions::evaluate(
+            network,
+            question,
+            known,
+            self.setting.rooted,
+            self.setting.budget,
+        );
         let mut report = FunctionReport {
             name: question.name.clone(),
             question: index,
@@ -248,7 +254,12 @@ impl Run<'_> {
         let Some(leading) = expanded.denominator.last() else {
             return Ok(());
         };
-        let found = drops(leading, &self.knowledge, self.setting.network.symbols(), self.setting.budget);
+        let found = drops(
+            leading,
+            &self.knowledge,
+            self.setting.network.symbols(),
+            self.setting.budget,
+        );
         let (conditions, relied_on) = found?;
         report.drops_when = conditions;
         report.relied_on = relied_on.into_iter().collect();
@@ -275,7 +286,9 @@ impl Run<'_> {
             });
         }
         let number = numerator.content().gcd(&denominator.content());
-        let monomial = numerator.monomial_content().gcd(&denominator.monomial_content());
+        let monomial = numerator
+            .monomial_content()
+            .gcd(&denominator.monomial_content());
         let common = Polynomial::monomial(number, monomial);
         if !common.is_one() {
             numerator = numerator.div_exact(&common).unwrap_or(numerator);

@@ -143,7 +143,9 @@ impl Auditor<'_> {
                 self.solved
                     .pairing
                     .sample(self.network(), &choice)
-                    .is_none_or(|sample| sample.numerator.gcd(&sample.denominator, field) != *common)
+                    .is_none_or(|sample| {
+                        sample.numerator.gcd(&sample.denominator, field) != *common
+                    })
             })
             .collect()
     }
@@ -186,7 +188,8 @@ impl Auditor<'_> {
         let budget = self.setting.budget;
         let mut table = self.names.clone();
         let mut copies: BTreeMap<Symbol, (RelationId, Symbol)> = BTreeMap::new();
-        let mut substitution = Substitution::released(self.network(), &mut table, &mut copies, budget)?;
+        let mut substitution =
+            Substitution::released(self.network(), &mut table, &mut copies, budget)?;
         let mut numbers: BTreeMap<Symbol, Fraction> = BTreeMap::new();
         for quantity in self.quantities() {
             if involved.contains(&quantity) {
@@ -207,9 +210,12 @@ impl Auditor<'_> {
             }
         }
         let keys: Vec<Symbol> = numbers.keys().copied().collect();
-        substitution.extend(&|symbol| numbers.get(&symbol).cloned(), keys.into_iter(), budget)?;
-        let Ok(couplings) =
-            Couplings::new(self.network(), &mut substitution, &mut table, budget)?
+        substitution.extend(
+            &|symbol| numbers.get(&symbol).cloned(),
+            keys.into_iter(),
+            budget,
+        )?;
+        let Ok(couplings) = Couplings::new(self.network(), &mut substitution, &mut table, budget)?
         else {
             return Ok(None);
         };
@@ -400,8 +406,14 @@ impl Auditor<'_> {
             if quick.is_some_and(|degree| degree < total * factor.degree(Symbol::S)) {
                 return false;
             }
-            multiplicity_at(&self.solved.pairing, self.network(), factor, self.setting, kept)
-                .is_some_and(|found| found >= total)
+            multiplicity_at(
+                &self.solved.pairing,
+                self.network(),
+                factor,
+                self.setting,
+                kept,
+            )
+            .is_some_and(|found| found >= total)
         };
         if !enough(&open.iter().copied().collect()) {
             return None;
@@ -452,7 +464,10 @@ impl Auditor<'_> {
             return Ok(missing.into_iter().collect());
         }
         let at_nominals = |polynomial: &Polynomial| {
-            polynomial.evaluate(&|symbol| self.nominal(symbol)).0.primitive()
+            polynomial
+                .evaluate(&|symbol| self.nominal(symbol))
+                .0
+                .primitive()
         };
         let common = gcd(&at_nominals(&numerator), &at_nominals(&denominator), budget)?;
         if common.degree(Symbol::S) == 0 {
@@ -497,7 +512,8 @@ impl Auditor<'_> {
         let mut conditions: Vec<Polynomial> = Vec::new();
         for upper in &above {
             for lower in &below {
-                let resultant = crate::algebra::resultant::resultant(upper, lower, Symbol::S, budget)?;
+                let resultant =
+                    crate::algebra::resultant::resultant(upper, lower, Symbol::S, budget)?;
                 for (part, _) in factor(&resultant, budget)?.factors {
                     let value = part.evaluate(&|symbol| self.nominal(symbol)).0;
                     let part = with_positive_lead(&part, self.names);
@@ -577,10 +593,11 @@ pub(crate) fn nominal(
     }
     if network.set_by(symbol).is_some() {
         let value = plain.value(symbol);
-        let known = value
-            .symbols()
-            .into_iter()
-            .all(|inner| network.facts(inner).is_some_and(|facts| facts.nominal.is_some()));
+        let known = value.symbols().into_iter().all(|inner| {
+            network
+                .facts(inner)
+                .is_some_and(|facts| facts.nominal.is_some())
+        });
         if known {
             return value.value(&|inner| {
                 network
@@ -608,7 +625,9 @@ pub(crate) fn factors_in_s(
 }
 
 fn binomial(count: usize, size: usize) -> usize {
-    (0..size).fold(1, |product, step| product * count.saturating_sub(step) / (step + 1))
+    (0..size).fold(1, |product, step| {
+        product * count.saturating_sub(step) / (step + 1)
+    })
 }
 
 /// All subsets of a size, in file order.

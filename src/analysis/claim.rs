@@ -8,9 +8,7 @@ use crate::analysis::report::{
     Cancellation, ClaimReport, Finding, FunctionReport, NetworkOrder, Verdict,
 };
 use crate::budget::{Budget, Exceeded};
-use crate::network::{
-    Assertion, CancellationClass, Claim, ClaimedValue, Network, Side, Subject,
-};
+use crate::network::{Assertion, CancellationClass, Claim, ClaimedValue, Network, Side, Subject};
 
 /// What claims are held against.
 pub(crate) struct Evidence<'a> {
@@ -59,7 +57,10 @@ impl Evidence<'_> {
             Assertion::Cancels(function, classes) => self.cancels(*function, classes),
             Assertion::Stable { .. } => (
                 Verdict::Undecided,
-                vec![note("not available yet", "stability is not decided by this version")],
+                vec![note(
+                    "not available yet",
+                    "stability is not decided by this version",
+                )],
             ),
         };
         Ok(ClaimReport {
@@ -110,7 +111,10 @@ impl Evidence<'_> {
             return Ok((
                 Verdict::No,
                 vec![
-                    note("claimed", "an expression that divides by zero under the relations"),
+                    note(
+                        "claimed",
+                        "an expression that divides by zero under the relations",
+                    ),
                     self.formula("found", &found),
                 ],
             ));
@@ -263,7 +267,10 @@ impl Evidence<'_> {
         let Some(value) = self.resolve(value)? else {
             return Ok((
                 Verdict::No,
-                vec![note("claimed", "an expression that divides by zero under the relations")],
+                vec![note(
+                    "claimed",
+                    "an expression that divides by zero under the relations",
+                )],
             ));
         };
         let polynomial = match side {
@@ -398,4 +405,3 @@ fn note(label: impl Into<String>, text: impl Into<String>) -> Finding {
         formula: None,
     }
 }
-

@@ -2,10 +2,10 @@
 
 use std::collections::BTreeSet;
 
-use crate::algebra::{Polynomial, SymbolTable};
-use crate::analysis::normal::with_positive_lead;
 use crate::algebra::factor::factor;
+use crate::algebra::{Polynomial, SymbolTable};
 use crate::analysis::knowledge::Knowledge;
+use crate::analysis::normal::with_positive_lead;
 use crate::analysis::report::{Drop, Verdict};
 use crate::budget::{Budget, Exceeded};
 

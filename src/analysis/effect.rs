@@ -96,28 +96,40 @@ fn reason(network: &Network, part: ElementId) -> Option<String> {
         if let [first, second] = ends(node).as_slice() {
             let other = if *first == part { *second } else { *first };
             let is_sensed = network.devices().iter().any(|device| {
-                device.terminals.iter().any(|(_, terminal)| *terminal == node)
+                device
+                    .terminals
+                    .iter()
+                    .any(|(_, terminal)| *terminal == node)
             });
             if let Kind::Source(source) = &network.element(other).kind {
                 if source.quantity == Quantity::Current && !is_sensed {
-                    return Some(format!("{} drives its current", network.element(other).name));
+                    return Some(format!(
+                        "{} drives its current",
+                        network.element(other).name
+                    ));
                 }
             }
         }
     }
     network.devices().iter().find_map(|device| {
-        let held = device.elements.iter().any(|&id| match &network.element(id).kind {
-            Kind::Amplifier { output, rout: None, .. } | Kind::Nullor { output, .. } => {
-                (output.from == port.from && output.to == port.to)
-                    || (output.from == port.to && output.to == port.from)
-            }
-            Kind::Source(source) => {
-                source.quantity == Quantity::Voltage
-                    && ((source.port.from == port.from && source.port.to == port.to)
-                        || (source.port.from == port.to && source.port.to == port.from))
-            }
-            _ => false,
-        });
+        let held = device
+            .elements
+            .iter()
+            .any(|&id| match &network.element(id).kind {
+                Kind::Amplifier {
+                    output, rout: None, ..
+                }
+                | Kind::Nullor { output, .. } => {
+                    (output.from == port.from && output.to == port.to)
+                        || (output.from == port.to && output.to == port.from)
+                }
+                Kind::Source(source) => {
+                    source.quantity == Quantity::Voltage
+                        && ((source.port.from == port.from && source.port.to == port.to)
+                            || (source.port.from == port.to && source.port.to == port.from))
+                }
+                _ => false,
+            });
         held.then(|| format!("its node is held by {}", device.name))
     })
 }

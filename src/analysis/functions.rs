@@ -38,7 +38,10 @@ pub(crate) fn needed(network: &Network, wanted: &Wanted) -> BTreeSet<usize> {
         .map(|(index, _)| index)
         .collect();
     if wanted.claims {
-        let symbols = network.claims().iter().flat_map(|claim| named(&claim.assertion));
+        let symbols = network
+            .claims()
+            .iter()
+            .flat_map(|claim| named(&claim.assertion));
         stack.extend(symbols.filter_map(|symbol| network.question_of(symbol)));
     }
     let mut needed = BTreeSet::new();
@@ -68,7 +71,11 @@ pub(crate) fn needed(network: &Network, wanted: &Wanted) -> BTreeSet<usize> {
             | Ask::Ratio { .. }
             | Ask::ReturnRatio(_) => Vec::new(),
         };
-        stack.extend(symbols.into_iter().filter_map(|symbol| network.question_of(symbol)));
+        stack.extend(
+            symbols
+                .into_iter()
+                .filter_map(|symbol| network.question_of(symbol)),
+        );
     }
     needed
 }
@@ -127,7 +134,12 @@ pub(crate) fn evaluate(
             return Ok(None);
         }
         let result = value.substitute(
-            &|symbol| known.get(&symbol).cloned().or_else(|| Some(substitution.value(symbol))),
+            &|symbol| {
+                known
+                    .get(&symbol)
+                    .cloned()
+                    .or_else(|| Some(substitution.value(symbol)))
+            },
             budget,
         )?;
         result.map(Some).ok_or_else(|| {
@@ -172,7 +184,9 @@ pub(crate) fn evaluate(
 }
 
 fn wrong(question: &Question, message: String, help: &str) -> Trouble {
-    Trouble::Wrong(Box::new(Diagnostic::error(question.place, message).help(help)))
+    Trouble::Wrong(Box::new(
+        Diagnostic::error(question.place, message).help(help),
+    ))
 }
 
 fn free_of_relations(
@@ -261,9 +275,15 @@ fn first_order(
     } else {
         let one_over = Fraction::symbol(symbol).recip();
         let put = |found: Symbol| {
-            if found == symbol { one_over.clone() } else { None }
+            if found == symbol {
+                one_over.clone()
+            } else {
+                None
+            }
         };
-        value.substitute(&put, budget)?.unwrap_or_else(Fraction::zero)
+        value
+            .substitute(&put, budget)?
+            .unwrap_or_else(Fraction::zero)
     };
     let slope = in_small.derivative(symbol, budget)?;
     let at_zero = at_value(&slope, symbol, &Fraction::zero(), question, budget)?;

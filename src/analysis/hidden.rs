@@ -118,22 +118,24 @@ fn at_point(
         }
     };
     let (not_driven, not_seen) = (count(&driven), count(&seen));
-    Some(match (not_driven == multiplicity, not_seen == multiplicity) {
-        (true, true) => Hidden::One(Hides::Both),
-        (true, false) => Hidden::One(Hides::NotDriven),
-        (false, true) => Hidden::One(Hides::NotSeen),
-        (false, false) => Hidden::Each(
-            (0..multiplicity)
-                .map(|copy| {
-                    if copy < not_driven {
-                        Hides::NotDriven
-                    } else {
-                        Hides::NotSeen
-                    }
-                })
-                .collect(),
-        ),
-    })
+    Some(
+        match (not_driven == multiplicity, not_seen == multiplicity) {
+            (true, true) => Hidden::One(Hides::Both),
+            (true, false) => Hidden::One(Hides::NotDriven),
+            (false, true) => Hidden::One(Hides::NotSeen),
+            (false, false) => Hidden::Each(
+                (0..multiplicity)
+                    .map(|copy| {
+                        if copy < not_driven {
+                            Hides::NotDriven
+                        } else {
+                            Hides::NotSeen
+                        }
+                    })
+                    .collect(),
+            ),
+        },
+    )
 }
 
 /// No determinant of the equations has a higher degree in s.

@@ -131,9 +131,7 @@ impl<'a> Knowledge<'a> {
         }
         match self.network.facts(symbol).map(|facts| &facts.sign) {
             Some(Sign::Positive) => true,
-            Some(Sign::Within(range)) => {
-                range.low.as_ref().is_some_and(|low| low.signum() > 0)
-            }
+            Some(Sign::Within(range)) => range.low.as_ref().is_some_and(|low| low.signum() > 0),
             Some(Sign::Real) | None => false,
         }
     }
@@ -146,8 +144,10 @@ impl<'a> Knowledge<'a> {
             facts: self.facts.iter().map(|known| known.fact.clone()).collect(),
         };
         let (sign, used) = rules.sign(polynomial)?;
-        let mut relied_on: BTreeSet<String> =
-            used.iter().map(|&index| self.facts[index].text.clone()).collect();
+        let mut relied_on: BTreeSet<String> = used
+            .iter()
+            .map(|&index| self.facts[index].text.clone())
+            .collect();
         for symbol in polynomial.symbols() {
             if self.is_positive(symbol) && symbol != Symbol::PI {
                 relied_on.insert(format!("{} > 0", self.network.symbols().name(symbol)));
@@ -177,7 +177,10 @@ impl<'a> Knowledge<'a> {
     pub(crate) fn zero_of(&self, polynomial: &Polynomial) -> Option<Vec<(Symbol, Rational)>> {
         let symbols = polynomial.symbols();
         for attempt in 0..40_usize {
-            for &unknown in symbols.iter().filter(|&&symbol| polynomial.degree(symbol) == 1) {
+            for &unknown in symbols
+                .iter()
+                .filter(|&&symbol| polynomial.degree(symbol) == 1)
+            {
                 let trial = |symbol: Symbol| self.trial(symbol, attempt);
                 let coefficients = polynomial.coefficients(unknown);
                 let constant = coefficients[0].value(&trial);
@@ -193,7 +196,12 @@ impl<'a> Knowledge<'a> {
                     }
                 };
                 if self.allows(&value) {
-                    return Some(symbols.iter().map(|&symbol| (symbol, value(symbol))).collect());
+                    return Some(
+                        symbols
+                            .iter()
+                            .map(|&symbol| (symbol, value(symbol)))
+                            .collect(),
+                    );
                 }
             }
         }
@@ -211,6 +219,9 @@ impl<'a> Knowledge<'a> {
         let spread = (symbol.index() * 7 + attempt * 13) % (2 + attempt);
         let number = i64::try_from(1 + spread).unwrap_or(1);
         let scale = if attempt % 3 == 2 { 10 } else { 1 };
-        Rational::from(number) * Rational::from(scale).recip().unwrap_or(Rational::from(1_i64))
+        Rational::from(number)
+            * Rational::from(scale)
+                .recip()
+                .unwrap_or(Rational::from(1_i64))
     }
 }

@@ -103,7 +103,10 @@ fn common_on_line(
         let sample = pairing.sample(network, &choice)?;
         let common = sample.numerator.gcd(&sample.denominator, field);
         // The leading coefficient of the numerator clears what made the divisor monic.
-        Some((common.degree()?, common.scale(sample.numerator.lead(), field)))
+        Some((
+            common.degree()?,
+            common.scale(sample.numerator.lead(), field),
+        ))
     };
     let mut points: Vec<(u64, Univariate)> = Vec::new();
     let mut least = usize::MAX;
@@ -148,7 +151,10 @@ fn interpolate(
     let mut curves = Vec::with_capacity(degree + 1);
     for power in 0..=degree {
         let value = |common: &Univariate| common.coefficients().get(power).copied().unwrap_or(0);
-        let list: Vec<(u64, u64)> = through.iter().map(|(at, common)| (*at, value(common))).collect();
+        let list: Vec<(u64, u64)> = through
+            .iter()
+            .map(|(at, common)| (*at, value(common)))
+            .collect();
         let curve = Univariate::interpolate(&list, field);
         let fits = checks
             .iter()

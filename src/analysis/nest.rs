@@ -36,7 +36,11 @@ pub(crate) fn nested(
                 return Err(long);
             }
             let part = determinant.nested(&ring, &symbolic, &mut table, &mut definitions)?;
-            value = if negative { &value - &part } else { &value + &part };
+            value = if negative {
+                &value - &part
+            } else {
+                &value + &part
+            };
         }
         sides.push(&value * factor);
     }
@@ -56,10 +60,17 @@ pub(crate) fn nested(
 }
 
 /// x1, x2, … with a letter that begins no name of the network.
-fn names_for(definitions: &[(Symbol, crate::algebra::Polynomial)], table: &SymbolTable) -> Vec<String> {
+fn names_for(
+    definitions: &[(Symbol, crate::algebra::Polynomial)],
+    table: &SymbolTable,
+) -> Vec<String> {
     let letter = ["x", "t", "u", "w", "q"]
         .into_iter()
-        .find(|letter| (1..=definitions.len()).all(|n| table.find(&format!("{letter}{n}")).is_none()))
+        .find(|letter| {
+            (1..=definitions.len()).all(|n| table.find(&format!("{letter}{n}")).is_none())
+        })
         .unwrap_or("x_");
-    (1..=definitions.len()).map(|n| format!("{letter}{n}")).collect()
+    (1..=definitions.len())
+        .map(|n| format!("{letter}{n}"))
+        .collect()
 }

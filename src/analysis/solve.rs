@@ -235,7 +235,8 @@ pub(crate) fn part_in_s(polynomial: &Polynomial, budget: &Budget) -> Result<Poly
 
 /// An impedance asked across a source that shorts its port.
 fn shorted(network: &Network, port: Port, question: &Question) -> Option<Diagnostic> {
-    let mut neighbours: Vec<Vec<(NodeId, Option<ElementId>)>> = vec![Vec::new(); network.node_count()];
+    let mut neighbours: Vec<Vec<(NodeId, Option<ElementId>)>> =
+        vec![Vec::new(); network.node_count()];
     for (id, element) in network.elements() {
         if question.without.contains(&id) {
             continue;

@@ -34,7 +34,8 @@ pub(crate) fn check(
             break;
         }
         let seed = 7_001 + attempt;
-        let Some(numbers) = Numbers::related(network, couplings, seed, random(seed, u64::MAX)) else {
+        let Some(numbers) = Numbers::related(network, couplings, seed, random(seed, u64::MAX))
+        else {
             continue;
         };
         let Some(solved) = value(network, question, &numbers, 0) else {
@@ -51,7 +52,9 @@ pub(crate) fn check(
         agreed += 1;
     }
     if agreed == 0 {
-        return Err(format!("the equations of {name} could not be solved at any point"));
+        return Err(format!(
+            "the equations of {name} could not be solved at any point"
+        ));
     }
     Ok(agreed)
 }
@@ -90,7 +93,9 @@ pub(crate) fn value(
             let solution = solve(&equations.rows, &[right]);
             let found = solution.solutions.first()?;
             let at = |node: crate::network::NodeId| {
-                node.index().checked_sub(1).map_or(Residue::ZERO, |index| found[index])
+                node.index()
+                    .checked_sub(1)
+                    .map_or(Residue::ZERO, |index| found[index])
             };
             Some(at(port.from).sub(at(port.to)))
         }
@@ -157,6 +162,8 @@ fn respond(
     Some(
         row.iter()
             .zip(found)
-            .fold(Residue::ZERO, |sum, (weight, value)| sum.add(weight.mul(*value))),
+            .fold(Residue::ZERO, |sum, (weight, value)| {
+                sum.add(weight.mul(*value))
+            }),
     )
 }

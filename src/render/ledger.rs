@@ -7,6 +7,7 @@ pub use function::{cause, degrees, function};
 pub use network::network;
 
 use crate::render::math::Math;
+use crate::render::sentence::runs;
 
 /// One line of an account.
 #[derive(Clone, Debug)]
@@ -66,10 +67,17 @@ impl Evidence {
         Self::Clause(text.into())
     }
 
-    /// A list of parts, long runs drawn together.
+    /// A list of parts, long runs drawn together, what is beyond any use counted.
     #[must_use]
     pub fn parts(names: &[&str]) -> Self {
-        Self::Items(crate::render::sentence::runs(names), Between::Blank)
+        const MOST: usize = 60;
+        let mut items = runs(names);
+        if items.len() > MOST {
+            let more = items.len() - MOST;
+            items.truncate(MOST);
+            items.push(format!("and {more} more"));
+        }
+        Self::Items(items, Between::Blank)
     }
 }
 

@@ -280,9 +280,9 @@ fn recombine(
         let mut hit = None;
         for choice in choices(pieces.len(), size) {
             budget.time()?;
-            let image = choice
-                .iter()
-                .fold(Polynomial::one(), |product, &index| &product * &pieces[index]);
+            let image = choice.iter().fold(Polynomial::one(), |product, &index| {
+                &product * &pieces[index]
+            });
             let candidate = back(&image).primitive();
             if candidate.is_constant() {
                 continue;
@@ -372,16 +372,20 @@ mod tests {
         factorisation
             .factors
             .iter()
-            .fold(unit, |product, (factor, power)| &product * &factor.pow(*power))
+            .fold(unit, |product, (factor, power)| {
+                &product * &factor.pow(*power)
+            })
     }
 
     #[test]
     fn tied_ladders_split_into_what_they_are() {
         // 1 + 3x + x² is irreducible, 1 + 4x + 3x² = (1 + x)(1 + 3x); x = R·C·s.
         let mut table = SymbolTable::new();
-        let x = ["R", "C"].iter().fold(Polynomial::symbol(Symbol::S), |product, name| {
-            &product * &Polynomial::symbol(table.intern(name))
-        });
+        let x = ["R", "C"]
+            .iter()
+            .fold(Polynomial::symbol(Symbol::S), |product, name| {
+                &product * &Polynomial::symbol(table.intern(name))
+            });
         let budget = Budget::unlimited();
         let one = Polynomial::one();
         let poly = |a: i64, b: i64| {
@@ -412,6 +416,12 @@ mod tests {
         assert_eq!(product(&found), all);
         assert_eq!(found.factors.len(), 3);
         let square_difference = &(a * a) - &(b * b);
-        assert_eq!(factor(&square_difference, &budget).expect("ok").factors.len(), 2);
+        assert_eq!(
+            factor(&square_difference, &budget)
+                .expect("ok")
+                .factors
+                .len(),
+            2
+        );
     }
 }

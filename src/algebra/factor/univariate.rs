@@ -45,9 +45,9 @@ pub(super) fn factors(
         budget.time()?;
         let hit = super::choices(pieces.len(), size).find_map(|choice| {
             let lead = rest.last()?.clone();
-            let product = choice
-                .iter()
-                .fold(vec![lead], |product, &index| field.mul(&product, &pieces[index]));
+            let product = choice.iter().fold(vec![lead], |product, &index| {
+                field.mul(&product, &pieces[index])
+            });
             let candidate = primitive(field.symmetric(&product));
             let quotient = divide(&rest, &candidate)?;
             Some((choice, candidate, quotient))
@@ -66,7 +66,10 @@ pub(super) fn factors(
     if rest.len() > 1 {
         found.push(primitive(rest));
     }
-    Ok(found.iter().map(|dense| polynomial_of(dense, symbol)).collect())
+    Ok(found
+        .iter()
+        .map(|dense| polynomial_of(dense, symbol))
+        .collect())
 }
 
 fn polynomial_of(dense: &Dense, symbol: Symbol) -> Polynomial {
@@ -104,24 +107,28 @@ fn is_probable_prime(candidate: &BigInt) -> bool {
     let less = candidate - &one;
     let twos = less.trailing_zeros().unwrap_or(0);
     let odd = &less >> twos;
-    [2, 3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37].iter().all(|&base: &i32| {
-        let base = BigInt::from(base);
-        if (candidate % &base).is_zero() {
-            return *candidate == base;
-        }
-        let mut power = base.modpow(&odd, candidate);
-        if power == one || power == less {
-            return true;
-        }
-        (1..twos).any(|_| {
-            power = &power * &power % candidate;
-            power == less
+    [2, 3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37]
+        .iter()
+        .all(|&base: &i32| {
+            let base = BigInt::from(base);
+            if (candidate % &base).is_zero() {
+                return *candidate == base;
+            }
+            let mut power = base.modpow(&odd, candidate);
+            if power == one || power == less {
+                return true;
+            }
+            (1..twos).any(|_| {
+                power = &power * &power % candidate;
+                power == less
+            })
         })
-    })
 }
 
 fn primitive(dense: Dense) -> Dense {
-    let mut content = dense.iter().fold(BigInt::zero(), |gcd, value| gcd.gcd(value));
+    let mut content = dense
+        .iter()
+        .fold(BigInt::zero(), |gcd, value| gcd.gcd(value));
     if dense.last().is_some_and(Signed::is_negative) {
         content = -content;
     }
@@ -166,7 +173,12 @@ impl Modulus {
     }
 
     fn reduce(&self, dense: &Dense) -> Dense {
-        Self::trim(dense.iter().map(|value| value.mod_floor(&self.prime)).collect())
+        Self::trim(
+            dense
+                .iter()
+                .map(|value| value.mod_floor(&self.prime))
+                .collect(),
+        )
     }
 
     fn symmetric(&self, dense: &Dense) -> Dense {
@@ -259,7 +271,11 @@ impl Modulus {
         let length = a.len().max(b.len());
         let zero = BigInt::zero();
         let at = |dense: &Dense, index: usize| dense.get(index).unwrap_or(&zero).clone();
-        self.reduce(&(0..length).map(|index| at(a, index) - at(b, index)).collect())
+        self.reduce(
+            &(0..length)
+                .map(|index| at(a, index) - at(b, index))
+                .collect(),
+        )
     }
 
     /// Monic irreducible factors of a monic polynomial; repeated ones stay together, which only makes
@@ -307,7 +323,9 @@ impl Modulus {
             budget.time()?;
             let random: Dense = (0..product.len() - 1)
                 .map(|_| {
-                    seed = seed.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+                    seed = seed
+                        .wrapping_mul(6_364_136_223_846_793_005)
+                        .wrapping_add(1_442_695_040_888_963_407);
                     BigInt::from(seed >> 16)
                 })
                 .collect();

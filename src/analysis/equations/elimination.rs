@@ -34,7 +34,11 @@ pub(crate) fn solve(rows: &Rows, rights: &[Vec<Residue>]) -> Solution {
         determinant: Residue::ZERO,
         solutions: Vec::new(),
     };
-    while let Some(row) = open.iter().copied().min_by_key(|&row| (rows[row].len(), row)) {
+    while let Some(row) = open
+        .iter()
+        .copied()
+        .min_by_key(|&row| (rows[row].len(), row))
+    {
         open.remove(&row);
         let column = rows[row]
             .keys()
@@ -51,7 +55,11 @@ pub(crate) fn solve(rows: &Rows, rights: &[Vec<Residue>]) -> Solution {
         pivots.push((row, column));
         let entries = rows[row].clone();
         let right = rights[row].clone();
-        for &target in columns[column].clone().iter().filter(|&&target| target != row) {
+        for &target in columns[column]
+            .clone()
+            .iter()
+            .filter(|&&target| target != row)
+        {
             if !open.contains(&target) {
                 continue;
             }

@@ -427,11 +427,7 @@ impl<'a> Equations<'a> {
                     both(*output);
                 }
                 Kind::Conveyor {
-                    x,
-                    y,
-                    z,
-                    reference,
-                    ..
+                    x, y, z, reference, ..
                 } => {
                     both(Port { from: *x, to: *y });
                     both(Port {
@@ -465,7 +461,12 @@ impl<'a> Equations<'a> {
                 pairs.push((index(a.from), index(b.from)));
             }
         }
-        pairs.extend(shape.ports.iter().map(|port| (index(port.from), index(port.to))));
+        pairs.extend(
+            shape
+                .ports
+                .iter()
+                .map(|port| (index(port.from), index(port.to))),
+        );
         for (a, b) in pairs {
             let (a, b) = (find(&mut parent, a), find(&mut parent, b));
             parent[a] = b;

@@ -216,10 +216,13 @@ impl At for Numbers<'_> {
         };
         // M² = k²·L1·L2 is checked here, whatever the engine's way to M.
         let coil = |id| {
-            self.network.element(id).value().map_or(Residue::ZERO, |value| {
-                let (n, d) = self.value(value);
-                n.mul(d.inverse().unwrap_or(Residue::ZERO))
-            })
+            self.network
+                .element(id)
+                .value()
+                .map_or(Residue::ZERO, |value| {
+                    let (n, d) = self.value(value);
+                    n.mul(d.inverse().unwrap_or(Residue::ZERO))
+                })
         };
         let (k, k_below) = self.value(k);
         let k = k.mul(k_below.inverse().unwrap_or(Residue::ZERO));
@@ -253,7 +256,11 @@ impl At for Numbers<'_> {
         });
         let coefficients = pairs
             .iter()
-            .map(|(above, below)| above.mul(common).mul(below.inverse().unwrap_or(Residue::ZERO)))
+            .map(|(above, below)| {
+                above
+                    .mul(common)
+                    .mul(below.inverse().unwrap_or(Residue::ZERO))
+            })
             .collect();
         (coefficients, common)
     }
@@ -270,5 +277,9 @@ pub(crate) fn random(seed: u64, stream: u64) -> Residue {
     word = word.wrapping_mul(0xD6E8_FEB8_6659_FD93);
     word ^= word >> 32;
     let value = Residue::new(word);
-    if value.is_zero() { residue(&crate::algebra::Rational::one()) } else { value }
+    if value.is_zero() {
+        residue(&crate::algebra::Rational::one())
+    } else {
+        value
+    }
 }

@@ -409,12 +409,7 @@ impl Lowering<'_> {
         let symbol = self.new_symbol(&symbol_name, Origin::Option, dimension, given.name.place);
         let right = self.spelled(&value, &waiting.scope);
         let text = format!("{symbol_name} = {right}");
-        self.add_relation(
-            vec![(symbol, linear.constant)],
-            text,
-            None,
-            value.place,
-        );
+        self.add_relation(vec![(symbol, linear.constant)], text, None, value.place);
         Ok(Some(Value::Symbol(symbol)))
     }
 
@@ -789,14 +784,8 @@ impl Lowering<'_> {
                         self.enter(&symbol_name, What::Symbol, place);
                         let symbol =
                             self.new_symbol(&symbol_name, Origin::Option, Some(dimension), place);
-                        let text =
-                            format!("{symbol_name} = {}", self.spelled(given, scope));
-                        self.add_relation(
-                            vec![(symbol, linear.constant)],
-                            text,
-                            None,
-                            given.place,
-                        );
+                        let text = format!("{symbol_name} = {}", self.spelled(given, scope));
+                        self.add_relation(vec![(symbol, linear.constant)], text, None, given.place);
                         Value::Symbol(symbol)
                     }
                 }

@@ -4,17 +4,20 @@ use crate::analysis::report::{NetworkOrder, StaticSet, Stored};
 use crate::network::{ElementId, Kind};
 use crate::render::answer::Answer;
 use crate::render::ledger::{Between, Evidence, Line, entry, noun};
+use crate::render::names::natural;
 use crate::render::sentence::{self, listed};
 
 /// The account of the network.
 #[must_use]
 pub fn network(answer: &Answer<'_>) -> Vec<Line> {
     let order = &answer.report.order;
+    let mut reactive = answer.parts(&order.reactive);
+    reactive.sort_by(|left, right| natural(left, right));
     let mut lines = vec![entry(
         false,
         order.reactive.len(),
         noun(order.reactive.len(), "reactive part", "reactive parts"),
-        vec![Evidence::parts(&answer.parts(&order.reactive))],
+        vec![Evidence::parts(&reactive)],
     )];
     if order.device_states > 0 {
         lines.push(device_states(answer, order));

@@ -1,0 +1,83 @@
+//! The commands.
+
+mod check;
+mod json;
+mod one;
+
+use crate::analysis::report::Wanted;
+use crate::cli::args::{Command, Format};
+use crate::cli::case::{Case, Question};
+use crate::cli::exit::Exit;
+use crate::cli::explain::explain;
+use crate::cli::output::{Streams, Terminal};
+use crate::render::sentence::counted;
+use crate::render::text::Page;
+use crate::render::{Detail, latex, text};
+
+/// Runs a command.
+pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
+    match command {
+        Command::Check(arguments) => check::run(arguments, streams),
+        Command::Order(arguments) => one::run(arguments, Detail::Order, streams),
+        Command::Formula(arguments) => one::run(arguments, Detail::Formula, streams),
+        Command::Audit(arguments) => one::run(arguments, Detail::Audit, streams),
+    }
+}
+
+/// More messages than this about one file help nobody.
+const MOST_MESSAGES: usize = 50;
+
+/// Draws the messages about a case on the error stream.
+fn explain_all(case: &Case, streams: &mut Streams<'_>) {
+    let diagnostics = case.diagnostics();
+    for diagnostic in diagnostics.iter().take(MOST_MESSAGES) {
+        let text = explain(diagnostic, &case.sources, streams.terminal.colour_errors);
+        streams.explain(&text);
+    }
+    if let Some(more) = diagnostics.len().checked_sub(MOST_MESSAGES)
+        && more > 0
+    {
+        let messages = counted(more, "further message", "further messages");
+        streams.explain(&format!("… {messages} about {}\n", case.name));
+    }
+}
+
+/// The answer in words; empty where there is none.
+fn in_words(case: &Case, detail: Detail, format: Format, terminal: Terminal) -> String {
+    let Some(answer) = case.answer(detail) else {
+        return String::new();
+    };
+    match format {
+        Format::Latex => latex::answer(&answer),
+        Format::Text | Format::Json => text::answer(&answer, &page(terminal)),
+    }
+}
+
+fn page(terminal: Terminal) -> Page {
+    let page = Page::default();
+    Page {
+        width: terminal.width.unwrap_or(page.width),
+        colour: terminal.colour_answers,
+    }
+}
+
+/// What a command needs to know.
+fn wanted(detail: Detail, format: Format, of: &[String]) -> Wanted {
+    Wanted {
+        functions: of.to_vec(),
+        formulas: matches!(detail, Detail::Formula | Detail::Audit),
+        claims: detail == Detail::Claims,
+        cancellations: match detail {
+            Detail::Audit => true,
+            Detail::Order => format != Format::Json,
+            Detail::Claims | Detail::Formula => false,
+        },
+    }
+}
+
+fn question(detail: Detail) -> Question {
+    match detail {
+        Detail::Claims | Detail::Order => Question::Optional,
+        Detail::Formula | Detail::Audit => Question::Needed,
+    }
+}

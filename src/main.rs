@@ -1,0 +1,7 @@
+//! The command `cutloop`.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    cutloop::cli::main()
+}
