@@ -9,6 +9,7 @@ mod table;
 use crate::analysis::report::FunctionReport;
 use crate::render::answer::{Answer, Detail};
 use crate::render::ledger;
+use crate::render::sentence;
 use escape::escape;
 
 /// The whole answer about one file.
@@ -47,10 +48,9 @@ fn function(answer: &Answer<'_>, result: &FunctionReport) -> String {
     if answer.detail == Detail::Audit {
         text.push_str(&table::cancellations(answer, result));
     }
-    if !result.relied_on.is_empty() {
-        let list = result.relied_on.iter().map(|it| escape(it));
-        let list: Vec<String> = list.collect();
-        text.push_str(&format!("Relies on {}.\n", list.join(", ")));
+    if answer.detail == Detail::Order && !result.relied_on.is_empty() {
+        let conditions = escape(&sentence::conditions(&result.relied_on));
+        text.push_str(&format!("Relies on {conditions}.\n"));
     }
     text
 }

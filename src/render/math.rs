@@ -101,7 +101,7 @@ impl Math {
         }
     }
 
-    /// A product; signs move to its front, ones vanish.
+    /// A product; signs and numbers move to its front, ones vanish.
     #[must_use]
     pub fn product(parts: impl IntoIterator<Item = Self>) -> Self {
         let mut negative = false;
@@ -115,6 +115,7 @@ impl Math {
                 other => factors.push(other),
             }
         }
+        factors.sort_by_key(|factor| !matches!(factor, Self::Number(_)));
         let body = match factors.len() {
             0 => Self::Number(Integer::one()),
             1 => factors.remove(0),
@@ -166,6 +167,18 @@ impl Math {
                 (true, Self::Sum(terms))
             }
             other => (false, other),
+        }
+    }
+
+    /// A sum with the terms that are added in front of those that are taken away.
+    #[must_use]
+    pub fn positive_first(self) -> Self {
+        match self {
+            Self::Sum(mut terms) => {
+                terms.sort_by_key(|term| term.negative);
+                Self::Sum(terms)
+            }
+            other => other,
         }
     }
 

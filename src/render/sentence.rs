@@ -3,6 +3,7 @@
 use crate::analysis::report::{Hides, Stored, Verdict};
 use crate::budget::Exceeded;
 use crate::network::CancellationClass;
+use crate::render::names::natural;
 
 /// `no`, `yes`, `not decided`.
 #[must_use]
@@ -106,6 +107,31 @@ fn stem_and_number(name: &str) -> (&str, Option<u64>) {
     (stem, name[stem.len()..].parse().ok())
 }
 
+/// Conditions in few words: `C1, R1 … R8 > 0; A0 > 1`.
+#[must_use]
+pub fn conditions(list: &[String]) -> String {
+    let (positive, others): (Vec<&str>, Vec<&str>) = list
+        .iter()
+        .map(String::as_str)
+        .partition(|it| it.strip_suffix(" > 0").is_some_and(is_name));
+    let mut names: Vec<&str> = positive
+        .iter()
+        .map(|it| it.trim_end_matches(" > 0"))
+        .collect();
+    names.sort_by(|left, right| natural(left, right));
+    let mut parts = Vec::new();
+    if !names.is_empty() {
+        parts.push(format!("{} > 0", runs(&names).join(", ")));
+    }
+    parts.extend(others.into_iter().map(str::to_owned));
+    parts.join("; ")
+}
+
+fn is_name(text: &str) -> bool {
+    let mut letters = text.chars();
+    letters.all(|letter| letter.is_alphanumeric() || letter == '_' || letter == '.')
+}
+
 /// Digits in groups of three with blanks: `12 345`.
 #[must_use]
 pub fn grouped(digits: &str) -> String {
@@ -134,6 +160,13 @@ mod tests {
         let names = ["C1", "C2", "C3", "C4", "C5", "C7", "L1", "L2"];
         assert_eq!(runs(&names), ["C1 … C5", "C7", "L1", "L2"]);
         assert_eq!(runs(&["a", "a"]), ["a", "a"]);
+    }
+
+    #[test]
+    fn positive_values_stand_together() {
+        let list = ["R10 > 0", "A0 > 1", "R2 > 0", "a + b > 0"].map(str::to_owned);
+        assert_eq!(conditions(&list), "R2, R10 > 0; A0 > 1; a + b > 0");
+        assert_eq!(conditions(&[]), "");
     }
 
     #[test]

@@ -143,10 +143,11 @@ impl Writer<'_> {
 
     fn root_of_ratio(&self, above: &Polynomial, below: &Polynomial) -> Option<Math> {
         let reduced = self.reduced(above, below)?;
-        Some(self.root(&reduced))
+        Some(self.root(&reduced, false))
     }
 
-    /// Q = √(d0·d2)/d1, common symbols divided out.
+    /// Q = √(d0·d2)/d1, common symbols divided out. The root of a positive polynomial has a positive
+    /// leading coefficient, and so has each of its factors: the sign of Q is that of d1's.
     fn quality(
         &self,
         constant: &Polynomial,
@@ -155,15 +156,16 @@ impl Writer<'_> {
     ) -> Option<Math> {
         let product = constant.product(square, &self.budget).ok()?;
         let reduced = self.reduced(&product, &linear.power(2, &self.budget).ok()?)?;
-        Some(self.root(&reduced))
+        Some(self.root(&reduced, linear.lead().signum() < 0))
     }
 
-    /// √ of a positive quotient.
-    fn root(&self, value: &Fraction) -> Math {
+    /// √ of a positive quotient, with a sign.
+    fn root(&self, value: &Fraction, negative: bool) -> Math {
         let spell = |part: &Polynomial| math::for_reading(part, self.names);
         let under = |part: Math| Math::Root(Box::new(part));
         let (above, above_root) = without_squares(value.numerator());
         let (below, below_root) = without_squares(value.denominator());
+        let below = if negative { -below } else { below };
         match (above_root.is_one(), below_root.is_one()) {
             (true, true) => Math::quotient(spell(&above), spell(&below)),
             (false, true) => {
@@ -353,6 +355,27 @@ mod tests {
         });
         assert_eq!(found[1], "ω0 = 1/(R1·C1)");
         assert_eq!(found[2], "Q = 1/2");
+    }
+
+    #[test]
+    fn the_quality_has_the_sign_of_the_damping() {
+        for turn in [false, true] {
+            let found = spelled(|it| {
+                let damping = &(&it[0] * &it[4]) - &(&it[1] * &it[3]);
+                let damping = if turn { -damping } else { damping };
+                let square = &(&it[0] * &it[3]) * &(&it[1] * &it[4]);
+                [
+                    vec![Polynomial::one()],
+                    vec![Polynomial::one(), damping, square],
+                ]
+            });
+            let expected = if turn {
+                "Q = √(R1·R2·C1·C2)/(R2·C1 − R1·C2)"
+            } else {
+                "Q = √(R1·R2·C1·C2)/(R1·C2 − R2·C1)"
+            };
+            assert_eq!(found[2], expected);
+        }
     }
 
     #[test]

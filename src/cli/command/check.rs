@@ -120,16 +120,18 @@ impl Tally {
             return "no claims".to_owned();
         }
         let claims = counted(all, "claim", "claims");
-        if self.hold == all {
-            return format!("{claims} {}", holding(all));
-        }
         let counts = [
             (self.hold, holding(self.hold)),
             (self.refuted, "refuted"),
             (self.undecided, "not decided"),
         ];
         let counts = counts.iter().filter(|(count, _)| *count > 0);
+        let counts: Vec<_> = counts.collect();
+        if let [(_, fate)] = counts.as_slice() {
+            return format!("{claims} {fate}");
+        }
         let counts: Vec<String> = counts
+            .iter()
             .map(|(count, fate)| format!("{count} {fate}"))
             .collect();
         format!("{claims}: {}", counts.join(", "))

@@ -12,6 +12,8 @@ pub(super) fn escape(text: &str) -> String {
             }
             '~' => escaped.push_str("\\textasciitilde{}"),
             '^' => escaped.push_str("\\textasciicircum{}"),
+            '<' => escaped.push_str("$<$"),
+            '>' => escaped.push_str("$>$"),
             '−' => escaped.push_str("$-$"),
             '·' => escaped.push_str("$\\cdot$"),
             '∥' => escaped.push_str("$\\parallel$"),

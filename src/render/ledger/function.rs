@@ -43,9 +43,9 @@ fn asked_in(answer: &Answer<'_>, result: &FunctionReport) -> String {
     let question = answer.question(result);
     let mut words = Vec::new();
     match question.ask {
-        Ask::Admittance(_) => words.push("with the port shorted".to_owned()),
-        Ask::Ratio { .. } => words.push("with the lower response held at zero".to_owned()),
-        Ask::ReturnRatio(_) => words.push("with the gain at zero".to_owned()),
+        Ask::Admittance(_) => words.push("port shorted".to_owned()),
+        Ask::Ratio { .. } => words.push("lower response held at zero".to_owned()),
+        Ask::ReturnRatio(_) => words.push("gain at zero".to_owned()),
         Ask::Transfer { .. }
         | Ask::Impedance(_)
         | Ask::Function(_)
@@ -54,7 +54,7 @@ fn asked_in(answer: &Answer<'_>, result: &FunctionReport) -> String {
     }
     if !question.without.is_empty() {
         words.push(format!(
-            "without {}",
+            "{} taken out",
             listed(&answer.parts(&question.without))
         ));
     }
@@ -146,9 +146,14 @@ fn order_evidence(answer: &Answer<'_>, result: &FunctionReport) -> Vec<Evidence>
         return evidence;
     }
     if result.hidden == Some(0) && result.order > 0 {
+        let shown = noun(
+            result.order as usize,
+            "the natural frequency shows",
+            "all natural frequencies show",
+        );
         evidence.push(Evidence::clause(match asked_in(answer, result).as_str() {
-            "" => "all natural frequencies show".to_owned(),
-            network => format!("all natural frequencies show, {network}"),
+            "" => shown.to_owned(),
+            network => format!("{shown} ({network})"),
         }));
     }
     if result.numerator_order > result.order {
@@ -221,12 +226,16 @@ fn no_effect_line(answer: &Answer<'_>, result: &FunctionReport) -> Option<Line> 
 pub fn degrees(result: &FunctionReport) -> String {
     let mut text = format!("order {}", result.order);
     if let (Some(network), Some(hidden)) = (result.network, result.hidden) {
-        let frequencies =
-            sentence::counted(network as usize, "natural frequency", "natural frequencies");
-        match hidden {
-            0 if network == 0 => {}
-            0 => text.push_str(", nothing hidden"),
-            _ => text.push_str(&format!(", {hidden} of {frequencies} hidden")),
+        match (hidden, network) {
+            (0, 0) => {}
+            (0, _) => text.push_str(", nothing hidden"),
+            (1, 1) => text.push_str(", the one natural frequency is hidden"),
+            (all, network) if all == network => {
+                text.push_str(&format!(", all {network} natural frequencies are hidden"));
+            }
+            _ => text.push_str(&format!(
+                ", {hidden} of {network} natural frequencies hidden"
+            )),
         }
     }
     if result.numerator_order > result.order {

@@ -105,7 +105,9 @@ fn natural_frequencies(answer: &Answer<'_>, order: &NetworkOrder) -> Line {
     let mut evidence = Vec::new();
     match (order.moving(), order.static_modes) {
         (0, 0) => {}
+        (1, 0) => evidence.push(Evidence::clause("moving")),
         (_, 0) => evidence.push(Evidence::clause("all moving")),
+        (0, 1) => evidence.push(Evidence::clause("static (at s = 0)")),
         (0, _) => evidence.push(Evidence::clause("all static (at s = 0)")),
         (moving, fixed) => {
             evidence.push(Evidence::clause(format!(

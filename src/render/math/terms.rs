@@ -85,7 +85,7 @@ pub fn for_reading(whole: &Polynomial, names: &Names<'_>) -> Math {
     let Some(rest) = whole.div_exact(&shared) else {
         return polynomial(whole, names);
     };
-    let sum = polynomial(&rest, names);
+    let sum = polynomial(&rest, names).positive_first();
     let rest = match nested(&rest, names) {
         product @ Math::Product(_) if product.leaves() < sum.leaves() => product,
         _ => sum,

@@ -1,4 +1,5 @@
-//! Pieces of text with a baseline: fractions with a drawn bar, pieces side by side.
+//! Pieces of text with a baseline: fractions with a drawn bar, pieces side by side. Fractions within
+//! a fraction have slashes.
 
 use crate::render::linear::READING;
 use crate::render::math::{Bars, Math, Within};
@@ -97,8 +98,8 @@ impl Block {
         }
         match math {
             Math::Quotient(above, below) => Self::fraction(
-                &Self::within(above, Within::Alone),
-                &Self::within(below, Within::Alone),
+                &Self::text(READING.spell(above)),
+                &Self::text(READING.spell(below)),
             ),
             Math::Negative(inner) => {
                 Self::beside(&[Self::text("− "), Self::within(inner, Within::Sum)])

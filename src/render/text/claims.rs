@@ -48,26 +48,31 @@ fn claim(answer: &Answer<'_>, it: &ClaimReport, widest: usize, page: &Page) -> S
 /// Column of the labels under a claim.
 const INDENT: usize = 17;
 
+/// Labels up to this length stand in a column of their own.
+const LABEL: usize = 18;
+
 fn findings(answer: &Answer<'_>, list: &[Finding], page: &Page) -> String {
-    let widest = list
-        .iter()
-        .map(|it| columns(&it.label))
-        .max()
-        .unwrap_or(0)
-        .min(24);
+    let labels = list.iter().map(|it| columns(&it.label));
+    let widest = labels.filter(|it| *it <= LABEL).max().unwrap_or(0);
     list.iter()
         .map(|it| finding(answer, it, widest, page))
         .collect()
 }
 
 fn finding(answer: &Answer<'_>, it: &Finding, widest: usize, page: &Page) -> String {
+    let room = page.width.saturating_sub(INDENT).max(24);
+    if let (None, Some(text)) = (&it.formula, &it.text)
+        && columns(&it.label) > widest
+    {
+        let sentence = format!("{}: {text}", it.label);
+        return Block::lines(words(&sentence, room)).indented(INDENT);
+    }
     let gap = " ".repeat(widest.saturating_sub(columns(&it.label)) + 2);
     let label = Block::text(format!("{}{gap}", it.label));
-    let room = page.width.saturating_sub(INDENT + label.width()).max(24);
+    let room = room.saturating_sub(label.width()).max(24);
     let mut blocks = vec![label];
     if let Some(text) = &it.text {
-        let words: Vec<String> = text.split(' ').map(str::to_owned).collect();
-        blocks.push(Block::lines(fill::words(&words, " ", room)));
+        blocks.push(Block::lines(words(text, room)));
     }
     if let Some((above, below)) = &it.formula {
         let names = answer.names(FrequencyPlace::First);
@@ -87,4 +92,9 @@ fn formula(math: &Math, room: usize) -> Block {
         return whole;
     }
     Block::lines(fill::lines(math, room, 0))
+}
+
+fn words(sentence: &str, room: usize) -> Vec<String> {
+    let words: Vec<String> = sentence.split(' ').map(str::to_owned).collect();
+    fill::words(&words, " ", room)
 }

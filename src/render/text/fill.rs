@@ -109,22 +109,27 @@ impl Filler {
             if index > 0 {
                 self.pending.push('·');
             }
-            if index > 0 && self.fits_below_only(factor) {
-                self.flush();
-                self.new_line(self.pending_indent + 2);
+            if index > 0 && matches!(factor, Math::Sum(_)) {
+                self.make_room(columns(&READING.spell_within(factor, Within::Product)));
             }
             self.part(factor, Within::Product);
         }
     }
 
-    /// Whether a sum in parentheses would be broken here but not on a line of its own.
-    fn fits_below_only(&self, factor: &Math) -> bool {
-        if !matches!(factor, Math::Sum(_)) {
-            return false;
+    /// Starts a new line where a sum in parentheses would be broken here but not on a line of its own:
+    /// before its whole term if that fits, else before its parenthesis.
+    fn make_room(&mut self, wide: usize) {
+        let front = columns(&self.pending);
+        if self.column + front + wide <= self.width {
+            return;
         }
-        let wide = columns(&READING.spell_within(factor, Within::Product));
-        let here = self.column + columns(&self.pending) + wide;
-        here > self.width && self.pending_indent + 2 + wide <= self.width
+        let trimmed = columns(self.pending.trim_start());
+        if !self.empty && self.pending_indent + trimmed + wide <= self.width {
+            self.flush_to(true);
+        } else if self.pending_indent + 2 + wide <= self.width {
+            self.flush();
+            self.new_line(self.pending_indent + 2);
+        }
     }
 
     fn new_line(&mut self, indent: usize) {
@@ -135,8 +140,13 @@ impl Filler {
 
     /// Puts the pending piece on the line, or on a new one where it does not fit.
     fn flush(&mut self) {
+        let fits = self.column + columns(&self.pending) <= self.width;
+        self.flush_to(!self.empty && !fits);
+    }
+
+    fn flush_to(&mut self, new_line: bool) {
         let mut piece = std::mem::take(&mut self.pending);
-        if !self.empty && self.column + columns(&piece) > self.width {
+        if new_line {
             let indent = self.pending_indent.min(self.width / 2);
             self.new_line(indent);
             let trimmed = piece.trim_start().to_owned();

@@ -51,7 +51,6 @@ fn footer(result: &FunctionReport, page: &Page) -> String {
     for line in fill::words(&words, " · ", page.width - INDENT) {
         text.push_str(&format!("  {}\n", Paint(page.colour).quiet(&line)));
     }
-    text.push_str(&order::relied_on(&result.relied_on, page));
     text
 }
 
@@ -94,8 +93,12 @@ fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
         .saturating_sub(INDENT + columns(&left) + 2)
         .max(20);
     let above = polynomial_lines(&formula.numerator, names, width);
+    let is_number = |side: &[Polynomial]| matches!(side, [only] if only.is_constant());
     let right = if matches!(formula.denominator.as_slice(), [one] if one.is_one()) {
         Block::lines(above)
+    } else if is_number(&formula.numerator) && is_number(&formula.denominator) {
+        let value = math::ratio(&formula.numerator[0], &formula.denominator[0], names);
+        Block::text(READING.spell(&value))
     } else {
         let below = polynomial_lines(&formula.denominator, names, width);
         Block::fraction(&Block::lines(above), &Block::lines(below))

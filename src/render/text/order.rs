@@ -3,6 +3,7 @@
 use crate::analysis::report::FunctionReport;
 use crate::render::answer::Answer;
 use crate::render::ledger;
+use crate::render::sentence;
 use crate::render::text::Page;
 use crate::render::text::columns;
 use crate::render::text::fill;
@@ -36,9 +37,9 @@ pub(super) fn relied_on(list: &[String], page: &Page) -> String {
     if list.is_empty() {
         return String::new();
     }
-    let mut items = list.to_vec();
-    items[0] = format!("relies on {}", items[0]);
-    let lines = fill::words(&items, ", ", page.width - 2);
+    let sentence = format!("relies on {}", sentence::conditions(list));
+    let words: Vec<String> = sentence.split(' ').map(str::to_owned).collect();
+    let lines = fill::words(&words, " ", page.width - 2);
     let lines = lines.iter().map(|line| Paint(page.colour).quiet(line));
     lines.map(|line| format!("  {line}\n")).collect()
 }
