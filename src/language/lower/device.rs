@@ -348,15 +348,18 @@ impl Lowering<'_> {
 
     /// Symbols of options that are not given.
     fn own_symbols(&mut self, waiting: &Waiting) {
-        let given = |name: &str| {
+        let find = |name: &str| {
             waiting
                 .options
                 .iter()
-                .any(|option| plain(&option.name) == name)
+                .find(|option| plain(&option.name) == name)
         };
         for &(option, default, dimension) in TABLE[waiting.row].options {
-            let replaced = (option == "rpi" && given("beta")) || (option == "gm" && given("mu"));
-            if default == Own && !given(option) && !replaced {
+            let given = find(option);
+            let replaced = (option == "rpi" && find("beta").is_some())
+                || (option == "gm" && find("mu").is_some());
+            let named = given.is_some_and(|option| option.value.is_none());
+            if named || default == Own && given.is_none() && !replaced {
                 let name = format!("{option}_{}", waiting.name);
                 self.enter(&name, What::Symbol, waiting.place);
                 self.new_symbol(&name, Origin::Option, dimension, waiting.place);
