@@ -5,6 +5,7 @@ use crate::analysis::report::Expanded;
 use crate::render::math::{self, Math};
 use crate::render::names::Names;
 use crate::render::nest;
+use crate::render::share;
 
 /// Up to this many terms a formula is written in one piece.
 const IN_PLACE: usize = 40;
@@ -47,7 +48,7 @@ pub struct Definition {
     pub name: String,
     /// What it stands for.
     pub value: Math,
-    /// Terms when expanded.
+    /// Terms when expanded; 0 where that was not counted.
     pub terms: usize,
 }
 
@@ -86,11 +87,36 @@ pub fn named(formula: &Expanded, names: &Names<'_>) -> NamedForm {
     };
     let numerator = side(&formula.numerator, above);
     let denominator = side(&formula.denominator, below);
+    if nested {
+        definitions = with_shared_sums(definitions, names);
+    }
     NamedForm {
         numerator,
         denominator,
         definitions,
     }
+}
+
+/// Sums that stand in several places get names of their own, in front of what uses them.
+fn with_shared_sums(list: Vec<Definition>, names: &Names<'_>) -> Vec<Definition> {
+    let values: Vec<Math> = list.iter().map(|it| it.value.clone()).collect();
+    let free = ["x", "y", "z", "ξ"].into_iter().find(|letter| {
+        let most: usize = values.iter().map(Math::leaves).sum();
+        (1..=most).all(|number| !names.is_taken(&format!("{letter}{number}")))
+    });
+    let shared = share::shared_sums(&values, free.unwrap_or("shared_"));
+    let first = shared
+        .definitions
+        .into_iter()
+        .map(|(name, value)| Definition {
+            name,
+            value,
+            terms: 0,
+        });
+    let rest = list.into_iter().zip(shared.values);
+    first
+        .chain(rest.map(|(it, value)| Definition { value, ..it }))
+        .collect()
 }
 
 fn define(name: String, value: &Polynomial, nested: bool, names: &Names<'_>) -> Definition {

@@ -1,7 +1,8 @@
 //! One tree for every writer: precedence, signs and the order of terms are decided here; writers only
 //! spell.
 //!
-//! Terms stand by ascending total degree, then by names in byte order with larger exponents first.
+//! Terms stand by ascending total degree, then by names in byte order (for reading with digits counted as
+//! numbers), larger exponents first.
 //! Within a term: the number, then the symbols as [`Names`](crate::render::names::Names) orders them. `R1*C1 - R2*C2` is
 //! `Sum[+ Product[R1, C1], − Product[R2, C2]]`.
 
@@ -16,7 +17,7 @@ pub use terms::{
 };
 
 /// An expression to be written.
-#[derive(Clone, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
 pub enum Math {
     /// A whole number, not negative.
     Number(Integer),
@@ -39,7 +40,7 @@ pub enum Math {
 }
 
 /// A term of a sum.
-#[derive(Clone, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
 pub struct Term {
     /// Whether it is taken away.
     pub negative: bool,
@@ -224,6 +225,26 @@ impl Math {
                 Bars::Drawn => within == Within::Base,
                 Bars::Slash => !matches!(within, Within::Alone | Within::Sum),
             },
+        }
+    }
+
+    /// How deep sums stand within sums; 0 without any.
+    #[must_use]
+    pub fn sums_within_sums(&self) -> usize {
+        match self {
+            Self::Number(_) | Self::Symbol(_) => 0,
+            Self::Sum(terms) => {
+                let inner = terms.iter().map(|term| term.body.sums_within_sums());
+                1 + inner.max().unwrap_or(0)
+            }
+            Self::Product(parts) | Self::Parallel(parts) => {
+                let inner = parts.iter().map(Self::sums_within_sums);
+                inner.max().unwrap_or(0)
+            }
+            Self::Quotient(above, below) => above.sums_within_sums().max(below.sums_within_sums()),
+            Self::Power(inner, _) | Self::Root(inner) | Self::Negative(inner) => {
+                inner.sums_within_sums()
+            }
         }
     }
 

@@ -15,6 +15,7 @@ pub mod names;
 pub mod nest;
 pub mod parallel;
 pub mod sentence;
+pub mod share;
 pub mod standard;
 pub mod text;
 

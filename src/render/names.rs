@@ -1,4 +1,4 @@
-//! Names of symbols and the two orders they stand in: by bytes between terms, as an engineer writes
+//! Names of symbols and the two orders they stand in: by name between terms, as an engineer writes
 //! within a product.
 
 use std::cmp::Ordering;
@@ -85,13 +85,16 @@ impl<'a> Names<'a> {
         matches!(self.rank(symbol), Rank::Resistance | Rank::Inductance)
     }
 
-    /// Order between symbols by the bytes of their names.
+    /// Order between symbols that decides the order of terms: by the bytes of their names, for
+    /// reading with digits counted as numbers.
     #[must_use]
-    pub fn by_bytes(&self, left: Symbol, right: Symbol) -> Ordering {
-        self.name(left)
-            .as_bytes()
-            .cmp(self.name(right).as_bytes())
-            .then(left.cmp(&right))
+    pub fn by_name(&self, left: Symbol, right: Symbol) -> Ordering {
+        let (left_name, right_name) = (self.name(left), self.name(right));
+        match self.frequency {
+            FrequencyPlace::First => natural(left_name, right_name),
+            FrequencyPlace::Last => left_name.as_bytes().cmp(right_name.as_bytes()),
+        }
+        .then(left.cmp(&right))
     }
 
     /// Order of symbols within a product: numbers and gains, conductances, resistors, inductors,

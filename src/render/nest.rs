@@ -16,37 +16,72 @@ pub fn nested(polynomial: &Polynomial, names: &Names<'_>) -> Math {
 }
 
 fn nest(mut terms: Terms, names: &Names<'_>) -> Math {
-    let mut parts: Vec<(Vec<Math>, Math)> = Vec::new();
+    let mut parts: Vec<Part> = Vec::new();
     while let Some((symbol, exponent)) = most_shared(&terms, names) {
         let divisor = Monomial::power(symbol, exponent);
         let (with, without): (Terms, Terms) = terms
             .into_iter()
             .partition(|(monomial, _)| monomial.exponent(symbol) > 0);
-        let inner = with
+        let inner: Terms = with
             .into_iter()
             .filter_map(|(monomial, coefficient)| Some((monomial.div(&divisor)?, coefficient)))
             .collect();
+        let before = stands_before(symbol, &inner, names);
         let taken = Math::name(names.name(symbol)).power(exponent);
-        join(&mut parts, taken, nest(inner, names));
+        join(&mut parts, symbol, before, taken, nest(inner, names));
         terms = without;
     }
+    parts.sort_by(|left, right| names.by_reading(left.symbol, right.symbol));
     let rest = math::polynomial(&Polynomial::from_terms(terms), names);
-    let products = parts
-        .into_iter()
-        .map(|(taken, inner)| Math::product([Math::sum(taken), inner]));
-    let parts = products.chain([rest]);
+    let parts = parts.into_iter().map(Part::product).chain([rest]);
     Math::sum(parts.filter(|part| !is_zero(part)))
 }
 
-/// Puts what was taken out beside the others that leave the same: `(R1 + R2)·(C1 + C2)`.
-fn join(parts: &mut Vec<(Vec<Math>, Math)>, taken: Math, inner: Math) {
-    match parts.iter_mut().find(|(_, other)| *other == inner) {
-        Some((list, _)) => list.push(taken),
-        None => parts.push((vec![taken], inner)),
+/// What was taken out, and what it leaves.
+struct Part {
+    symbol: Symbol,
+    before: bool,
+    taken: Vec<Math>,
+    inner: Math,
+}
+
+impl Part {
+    fn product(mut self) -> Math {
+        let taken = if self.taken.len() > 1 {
+            self.taken.reverse();
+            Math::sum(self.taken)
+        } else {
+            Math::product(self.taken)
+        };
+        if self.before {
+            Math::product([taken, self.inner])
+        } else {
+            Math::product([self.inner, taken])
+        }
     }
 }
 
-/// The symbol that stands in most terms, at least two, and its least exponent there.
+/// Puts what was taken out beside the others that leave the same: `(R1 + R2)·(C1 + C2)`.
+fn join(parts: &mut Vec<Part>, symbol: Symbol, before: bool, taken: Math, inner: Math) {
+    match parts.iter_mut().find(|part| part.inner == inner) {
+        Some(part) => part.taken.push(taken),
+        None => parts.push(Part {
+            symbol,
+            before,
+            taken: vec![taken],
+            inner,
+        }),
+    }
+}
+
+/// Whether a symbol stands before all that is left, as an engineer writes.
+fn stands_before(symbol: Symbol, inner: &Terms, names: &Names<'_>) -> bool {
+    let mut symbols = inner.iter().flat_map(|(monomial, _)| monomial.factors());
+    symbols.all(|(other, _)| names.by_reading(symbol, other).is_lt())
+}
+
+/// The symbol that stands in most terms, at least two, and its least exponent there; of several the
+/// last in reading order, so that capacitors and inductors come out of sums of resistances.
 fn most_shared(terms: &Terms, names: &Names<'_>) -> Option<(Symbol, u32)> {
     let mut seen: Vec<Option<Seen>> = Vec::new();
     for (symbol, exponent) in terms.iter().flat_map(|(monomial, _)| monomial.factors()) {
@@ -67,7 +102,7 @@ fn most_shared(terms: &Terms, names: &Names<'_>) -> Option<(Symbol, u32)> {
         .filter(|it| it.terms > 1)
         .max_by(|left, right| {
             let by_terms = left.terms.cmp(&right.terms);
-            by_terms.then_with(|| names.by_reading(right.symbol, left.symbol))
+            by_terms.then_with(|| names.by_reading(left.symbol, right.symbol))
         })
         .map(|it| (it.symbol, it.exponent))
 }

@@ -78,7 +78,8 @@ fn with_power(coefficient: &Polynomial, power: u32, names: &Names<'_>) -> Math {
 }
 
 /// A polynomial without s with the number and the symbols that all its terms share in front, and as a
-/// product where taking out symbols makes it one: `2·R1·(C1 + C2)`, `(R1 + R2)·(C1 + C2)`.
+/// product where taking out symbols makes it one, or shorter by a third: `2·R1·(C1 + C2)`,
+/// `(R1 + R2)·(C1 + C2)`.
 #[must_use]
 pub fn for_reading(whole: &Polynomial, names: &Names<'_>) -> Math {
     let shared = Polynomial::monomial(whole.content(), whole.monomial_content());
@@ -86,8 +87,12 @@ pub fn for_reading(whole: &Polynomial, names: &Names<'_>) -> Math {
         return polynomial(whole, names);
     };
     let sum = polynomial(&rest, names).positive_first();
-    let rest = match nested(&rest, names) {
-        product @ Math::Product(_) if product.leaves() < sum.leaves() => product,
+    let nested = nested(&rest, names);
+    let (long, short) = (sum.leaves(), nested.leaves());
+    let rest = match nested {
+        deep if deep.sums_within_sums() > 2 => sum,
+        product @ Math::Product(_) if short < long => product,
+        nested if 3 * short <= 2 * long => nested,
         _ => sum,
     };
     Math::product([polynomial(&shared, names), rest])
@@ -135,7 +140,7 @@ fn compare_keys(left: &Key, right: &Key) -> Ordering {
 /// Places of the symbols of one polynomial, in both orders, found once.
 struct TermOrder {
     first: usize,
-    bytes: Vec<u32>,
+    by_name: Vec<u32>,
     reading: Vec<u32>,
     spelled: Vec<Arc<str>>,
 }
@@ -169,7 +174,7 @@ impl TermOrder {
         Self {
             first,
             spelled,
-            bytes: ranks(&|left, right| names.by_bytes(left, right)),
+            by_name: ranks(&|left, right| names.by_name(left, right)),
             reading: ranks(&|left, right| names.by_reading(left, right)),
         }
     }
@@ -177,7 +182,7 @@ impl TermOrder {
     fn key(&self, monomial: &Monomial) -> Key {
         let mut ranks: SmallVec<[(u32, u32); 8]> = monomial
             .factors()
-            .map(|(symbol, exponent)| (self.bytes[symbol.index() - self.first], exponent))
+            .map(|(symbol, exponent)| (self.by_name[symbol.index() - self.first], exponent))
             .collect();
         ranks.sort_unstable();
         (monomial.total_degree(), ranks)

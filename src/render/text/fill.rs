@@ -50,7 +50,12 @@ struct Filler {
     empty: bool,
     pending: String,
     pending_indent: usize,
+    pending_depth: usize,
     starts: Vec<Start>,
+    /// Deepest parenthesis inside which a line was broken.
+    broken: usize,
+    /// Whether the next piece goes on a new line.
+    force: bool,
 }
 
 impl Filler {
@@ -63,7 +68,10 @@ impl Filler {
             empty: true,
             pending: String::new(),
             pending_indent: 0,
+            pending_depth: 0,
             starts: Vec::new(),
+            broken: 0,
+            force: false,
         }
     }
 
@@ -71,6 +79,8 @@ impl Filler {
         for (index, (negative, body)) in math.terms().into_iter().enumerate() {
             if index > 0 {
                 self.flush();
+                self.end_group(self.starts.len());
+                self.keep_whole(body);
             }
             self.pending.push_str(match (index, negative) {
                 (0, false) => "",
@@ -80,6 +90,24 @@ impl Filler {
             });
             self.part(body, Within::Sum);
         }
+    }
+
+    /// A term that was broken inside a parenthesis ends its line.
+    fn end_group(&mut self, depth: usize) {
+        if self.broken > depth {
+            self.force = true;
+            self.broken = depth;
+        }
+    }
+
+    /// Starts a new line before a term that would be broken here but not there, or far to the right.
+    fn keep_whole(&mut self, term: &Math) {
+        let wide = columns(&READING.spell_within(term, Within::Sum));
+        let indent = self.pending_indent.min(self.width / 2);
+        let here = self.column + 3 + wide <= self.width;
+        let fits_there = indent + 2 + wide <= self.width;
+        let far_right = self.column > indent + self.width / 4;
+        self.force |= !here && (fits_there || far_right);
     }
 
     fn part(&mut self, math: &Math, within: Within) {
@@ -120,13 +148,16 @@ impl Filler {
     /// before its whole term if that fits, else before its parenthesis.
     fn make_room(&mut self, wide: usize) {
         let front = columns(&self.pending);
-        if self.column + front + wide <= self.width {
+        if !self.force && self.column + front + wide <= self.width {
             return;
         }
         let trimmed = columns(self.pending.trim_start());
-        if !self.empty && self.pending_indent + trimmed + wide <= self.width {
+        let whole_term = !self.empty && !self.pending.contains(')');
+        if whole_term && self.pending_indent + trimmed + wide <= self.width {
             self.flush_to(true);
-        } else if self.pending_indent + 2 + wide <= self.width {
+        } else if self.pending_indent + 2 + wide <= self.width
+            && self.pending_indent < self.width / 2
+        {
             self.flush();
             self.new_line(self.pending_indent + 2);
         }
@@ -141,12 +172,14 @@ impl Filler {
     /// Puts the pending piece on the line, or on a new one where it does not fit.
     fn flush(&mut self) {
         let fits = self.column + columns(&self.pending) <= self.width;
-        self.flush_to(!self.empty && !fits);
+        self.flush_to(self.force || (!self.empty && !fits));
     }
 
     fn flush_to(&mut self, new_line: bool) {
         let mut piece = std::mem::take(&mut self.pending);
+        self.force = false;
         if new_line {
+            self.broken = self.broken.max(self.pending_depth);
             let indent = self.pending_indent.min(self.width / 2);
             self.new_line(indent);
             let trimmed = piece.trim_start().to_owned();
@@ -156,6 +189,7 @@ impl Filler {
             self.settle_starts(self.column, 0);
         }
         self.empty = false;
+        self.pending_depth = self.starts.len();
         self.column += columns(&piece);
         self.line.push_str(&piece);
         self.pending_indent = match self.starts.last() {

@@ -62,7 +62,7 @@ fn expanded(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
             let (above, below) = coefficients::term_counts(formula);
             let mut text = named(name, &coefficients::named(formula, names), page);
             let terms = expanded_terms(&above.to_string(), &below.to_string());
-            let note = format!("common symbols are taken out; {terms}");
+            let note = format!("shared parts are named, common symbols taken out; {terms}");
             text.push('\n');
             text.push_str(&remark(&note, page));
             text
