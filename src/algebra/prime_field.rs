@@ -87,6 +87,9 @@ impl PrimeField {
     /// a^exponent
     #[must_use]
     pub fn pow(&self, mut a: u64, mut exponent: u64) -> u64 {
+        if exponent == 1 {
+            return a;
+        }
         let mut power = 1;
         while exponent > 0 {
             if exponent & 1 == 1 {

@@ -3,10 +3,10 @@
 use std::collections::BTreeMap;
 
 use crate::algebra::{Fraction, Polynomial, Symbol, SymbolTable};
-use crate::analysis::cancellation::{Audit, audit};
+use crate::analysis::cancellation::{audit, whole};
 use crate::analysis::claim::Evidence;
 use crate::analysis::couplings::Couplings;
-use crate::analysis::drops::drops;
+use crate::analysis::drops::{drops, undecided};
 use crate::analysis::effect;
 use crate::analysis::functions;
 use crate::analysis::knowledge::Knowledge;
@@ -171,24 +171,22 @@ impl Run<'_> {
                 report.checked_points =
                     witness::check(network, index, known, self.setting.couplings)
                         .map_err(Failure::Witness)?;
-                self.conditions(&mut report)?;
+                self.conditions(&mut report);
             }
             Err(exceeded) => {
                 report.formula = nested(&self.setting, &solved.pairing, degrees.common)
                     .map_or(Formula::OverBudget(*exceeded), Formula::Nested);
             }
         }
-        if !degrees.zero && degrees.common > 0 || solved.function.is_ok() {
-            let audited = audit(&self.setting, self.plain, self.table, index, solved)?;
-            self.take_audit(&mut report, audited);
+        match audit(&self.setting, self.plain, self.table, index, solved) {
+            Ok(audited) => {
+                report.nominals_missing = audited.nominals_missing;
+                report.cancellations = Some(audited.cancellations);
+            }
+            Err(_) => report.cancellations = whole(&self.setting, self.table, solved),
         }
         report.no_effect = effect::without_effect(network, index, &report, self.setting.couplings);
         Ok(report)
-    }
-
-    fn take_audit(&self, report: &mut FunctionReport, audited: Audit) {
-        report.nominals_missing = audited.nominals_missing;
-        report.cancellations = Some(audited.cancellations);
     }
 
     fn of_functions(
@@ -234,7 +232,7 @@ impl Run<'_> {
                         witness::check(network, index, known, self.setting.couplings)
                             .map_err(Failure::Witness)?;
                 }
-                self.conditions(&mut report)?;
+                self.conditions(&mut report);
             }
             Ok(None) => {}
             Err(functions::Trouble::Exceeded(exceeded)) => report.formula = over(exceeded),
@@ -244,15 +242,15 @@ impl Run<'_> {
     }
 
     /// Where the order drops, with what the proofs rest on.
-    fn conditions(&self, report: &mut FunctionReport) -> Result<(), Failure> {
+    fn conditions(&self, report: &mut FunctionReport) {
         let Formula::Expanded(expanded) = &report.formula else {
-            return Ok(());
+            return;
         };
         if report.zero {
-            return Ok(());
+            return;
         }
         let Some(leading) = expanded.denominator.last() else {
-            return Ok(());
+            return;
         };
         let found = drops(
             leading,
@@ -260,10 +258,13 @@ impl Run<'_> {
             self.setting.network.symbols(),
             self.setting.budget,
         );
-        let (conditions, relied_on) = found?;
-        report.drops_when = conditions;
-        report.relied_on = relied_on.into_iter().collect();
-        Ok(())
+        match found {
+            Ok((conditions, relied_on)) => {
+                report.drops_when = conditions;
+                report.relied_on = relied_on.into_iter().collect();
+            }
+            Err(_) => report.drops_when = vec![undecided(leading, self.table)],
+        }
     }
 
     /// A function as it is written: without roots, coprime with numbers, leading sign positive.

@@ -579,6 +579,42 @@ impl Auditor<'_> {
     }
 }
 
+/// What cancels as one product, where its factors were not found within the budget; `None` where not
+/// even the product is known.
+pub(crate) fn whole(
+    setting: &Setting<'_>,
+    names: &SymbolTable,
+    solved: &Solved,
+) -> Option<Vec<Cancellation>> {
+    let reduced = solved.function.as_ref().ok()?;
+    if reduced.common.degree(Symbol::S) == 0 {
+        return Some(Vec::new());
+    }
+    let released = solved.pairing.lucky(setting.network, SEED, 1, &|_| true)?;
+    let field = solved.pairing.field();
+    let structural = released.numerator.gcd(&released.denominator, field).degree()?;
+    let degree = reduced.common.degree(Symbol::S);
+    let class = if structural >= degree as usize {
+        CancellationClass::Structural
+    } else {
+        CancellationClass::Matched
+    };
+    let (written, _) = setting.couplings.written(&reduced.common, &Polynomial::one());
+    Some(vec![Cancellation {
+        class,
+        factor: with_positive_lead(&written, names),
+        degree,
+        multiplicity: 1,
+        hides: None,
+        parts: Vec::new(),
+        static_set: Vec::new(),
+        because: Vec::new(),
+        also_because: Vec::new(),
+        conditions: Vec::new(),
+        factored: false,
+    }])
+}
+
 /// Nominal value of a symbol of an answer; M_T of a coupling by factor only where it is rational.
 pub(crate) fn nominal(
     network: &Network,

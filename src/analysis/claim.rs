@@ -329,7 +329,7 @@ impl Evidence<'_> {
 
 /// The word of the language for a class.
 #[must_use]
-pub fn class_word(class: CancellationClass) -> &'static str {
+pub(crate) fn class_word(class: CancellationClass) -> &'static str {
     match class {
         CancellationClass::Structural => "structural",
         CancellationClass::Matched => "matched",

@@ -61,3 +61,11 @@ fn never(leading: &Polynomial, names: &SymbolTable) -> Drop {
         example: Vec::new(),
     }
 }
+
+/// A condition that was not looked at within the budget.
+pub(crate) fn undecided(leading: &Polynomial, names: &SymbolTable) -> Drop {
+    Drop {
+        possible: Verdict::Undecided,
+        ..never(leading, names)
+    }
+}

@@ -35,7 +35,11 @@ pub fn gcd(a: &Polynomial, b: &Polynomial, budget: &Budget) -> Result<Polynomial
             .div_exact(&monomial)
             .unwrap_or_else(|| polynomial.primitive())
     };
-    let rest = without_content(&strip(a), &strip(b), budget)?;
+    let (left, right) = (strip(a), strip(b));
+    if left.is_constant() || right.is_constant() {
+        return Ok(common);
+    }
+    let rest = without_content(&left, &right, budget)?;
     Ok(positive(&rest * &common))
 }
 
@@ -109,39 +113,67 @@ fn without_content(
 fn shared_variables(a: &Polynomial, b: &Polynomial, attempt: u64) -> Vec<Symbol> {
     let field = PrimeField::default_prime();
     let others = b.symbols();
-    a.symbols()
+    let shared: Vec<Symbol> = a
+        .symbols()
         .into_iter()
-        .filter(|symbol| others.contains(symbol))
-        .filter(|&symbol| {
-            let left = along(a, symbol, attempt, &field);
-            let right = along(b, symbol, attempt, &field);
-            left.gcd(&right, &field).degree() != Some(0)
-        })
+        .filter(|symbol| others.binary_search(symbol).is_ok())
+        .collect();
+    let left = along_each(a, &shared, attempt, &field);
+    let right = along_each(b, &shared, attempt, &field);
+    shared
+        .into_iter()
+        .zip(left.iter().zip(&right))
+        .filter(|(_, (left, right))| left.gcd(right, &field).degree() != Some(0))
+        .map(|(symbol, _)| symbol)
         .collect()
 }
 
-/// The polynomial in one variable at random values of the others.
-fn along(
+/// For each variable the polynomial in it at random values of all others; one pass over the terms.
+fn along_each(
     polynomial: &Polynomial,
-    variable: Symbol,
+    variables: &[Symbol],
     attempt: u64,
     field: &PrimeField,
-) -> Univariate {
-    let mut coefficients = vec![0; polynomial.degree(variable) as usize + 1];
+) -> Vec<Univariate> {
+    let symbols = polynomial.symbols();
+    let values: Vec<(u64, u64)> = symbols
+        .iter()
+        .map(|&symbol| {
+            let value = (spread(attempt, symbol) % field.prime()).max(1);
+            (value, field.inv(value).unwrap_or(1))
+        })
+        .collect();
+    let place = |symbol: Symbol| symbols.binary_search(&symbol).unwrap_or(0);
+    let wanted: Vec<Option<usize>> = symbols
+        .iter()
+        .map(|symbol| variables.binary_search(symbol).ok())
+        .collect();
+    let mut lists: Vec<Vec<u64>> = variables
+        .iter()
+        .map(|&variable| vec![0; polynomial.degree(variable) as usize + 1])
+        .collect();
+    let mut totals = 0;
     for (monomial, coefficient) in polynomial.terms() {
         let mut value = field.from_integer(coefficient);
-        let mut power = 0;
         for (symbol, exponent) in monomial.factors() {
-            if symbol == variable {
-                power = exponent as usize;
-            } else {
-                let at = spread(attempt, symbol) % field.prime();
-                value = field.mul(value, field.pow(at, u64::from(exponent)));
+            value = field.mul(value, field.pow(values[place(symbol)].0, u64::from(exponent)));
+        }
+        totals = field.add(totals, value);
+        for (symbol, exponent) in monomial.factors() {
+            let at = place(symbol);
+            if let Some(index) = wanted[at] {
+                let without = field.mul(value, field.pow(values[at].1, u64::from(exponent)));
+                let target = &mut lists[index][exponent as usize];
+                *target = field.add(*target, without);
+                // What holds the variable does not stand in the constant coefficient.
+                lists[index][0] = field.sub(lists[index][0], value);
             }
         }
-        coefficients[power] = field.add(coefficients[power], value);
     }
-    Univariate::new(coefficients)
+    for list in &mut lists {
+        list[0] = field.add(list[0], totals);
+    }
+    lists.into_iter().map(Univariate::new).collect()
 }
 
 /// Fixed pseudo-random words (SplitMix64).

@@ -8,7 +8,7 @@ mod elimination;
 pub(crate) mod point;
 mod residue;
 
-pub(crate) use elimination::{Solution, solve};
+pub(crate) use elimination::solve;
 pub(crate) use residue::Residue;
 
 use std::collections::BTreeMap;

@@ -172,15 +172,20 @@ impl<'a> Numbers<'a> {
         fraction: &Fraction,
         function: &dyn Fn(Symbol) -> Option<Residue>,
     ) -> Option<Residue> {
+        let mut bases: BTreeMap<Symbol, Residue> = BTreeMap::new();
+        for symbol in fraction.symbols() {
+            let base = function(symbol).unwrap_or_else(|| {
+                let (n, d) = self.symbol(symbol);
+                n.mul(d.inverse().unwrap_or(Residue::ZERO))
+            });
+            bases.insert(symbol, base);
+        }
         let value = |polynomial: &Polynomial| -> Residue {
             let mut sum = Residue::ZERO;
             for (monomial, coefficient) in polynomial.terms() {
                 let mut term = Residue::integer(coefficient);
                 for (symbol, exponent) in monomial.factors() {
-                    let base = function(symbol).unwrap_or_else(|| {
-                        let (n, d) = self.symbol(symbol);
-                        n.mul(d.inverse().unwrap_or(Residue::ZERO))
-                    });
+                    let base = bases[&symbol];
                     term = term.mul(base.power(u64::from(exponent)));
                 }
                 sum = sum.add(term);

@@ -31,12 +31,13 @@ impl Residue {
 
     /// self + other
     pub(crate) fn add(self, other: Self) -> Self {
-        Self((self.0 + other.0) % PRIME)
+        let sum = self.0 + other.0;
+        Self(if sum >= PRIME { sum - PRIME } else { sum })
     }
 
     /// −self
     pub(crate) fn neg(self) -> Self {
-        Self((PRIME - self.0) % PRIME)
+        Self(if self.0 == 0 { 0 } else { PRIME - self.0 })
     }
 
     /// self − other
@@ -46,12 +47,19 @@ impl Residue {
 
     /// self · other
     pub(crate) fn mul(self, other: Self) -> Self {
-        let product = u128::from(self.0) * u128::from(other.0) % u128::from(PRIME);
-        Self(u64::try_from(product).unwrap_or(0))
+        // 2^61 = 1: the high part is added to the low part.
+        let product = u128::from(self.0) * u128::from(other.0);
+        let low = u64::try_from(product & u128::from(PRIME)).unwrap_or(0);
+        let high = u64::try_from(product >> 61).unwrap_or(0);
+        let folded = low + high;
+        Self(if folded >= PRIME { folded - PRIME } else { folded })
     }
 
     /// self^exponent
     pub(crate) fn power(self, mut exponent: u64) -> Self {
+        if exponent == 1 {
+            return self;
+        }
         let (mut base, mut power) = (self, Self::ONE);
         while exponent > 0 {
             if exponent & 1 == 1 {
@@ -65,6 +73,9 @@ impl Residue {
 
     /// 1/self (Fermat); `None` for zero.
     pub(crate) fn inverse(self) -> Option<Self> {
+        if self == Self::ONE {
+            return Some(self);
+        }
         (!self.is_zero()).then(|| self.power(PRIME - 2))
     }
 

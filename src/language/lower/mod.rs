@@ -75,8 +75,6 @@ pub(crate) struct RawRelation {
     pub(crate) deviation: Option<crate::language::syntax::Deviation>,
     pub(crate) scope: Rc<Scope>,
     pub(crate) place: Span,
-    /// The place of the name, when the relation is a link of a chain `a = b = …`.
-    pub(crate) text_right: Option<String>,
 }
 
 pub(crate) struct Lowering<'a> {
@@ -219,7 +217,6 @@ impl Lowering<'_> {
                         deviation: deviation.clone(),
                         scope: Rc::clone(&scope),
                         place: statement.place,
-                        text_right: None,
                     });
                 }
             }

@@ -309,8 +309,12 @@ impl Lowering<'_> {
             );
             return;
         }
+        let before = self.messages.len();
         self.check_unit(&nominal.value, &facts, name);
         self.check_sign(&nominal.value, &facts, name);
+        if self.messages.len() > before {
+            self.through(&nominal.scope);
+        }
         let tolerance = self.tolerance(&nominal.value);
         let range = nominal.value.range.as_ref().map(|(low, high)| Range {
             low: Some(low.value.clone()),
