@@ -166,10 +166,10 @@ impl Integer {
     /// When `other` is zero.
     #[must_use]
     pub fn div_rem(&self, other: &Self) -> (Self, Self) {
-        if let (Small(a), Small(b)) = (&self.0, &other.0) {
-            if let (Some(quotient), Some(rest)) = (a.checked_div(*b), a.checked_rem(*b)) {
-                return (Self(Small(quotient)), Self(Small(rest)));
-            }
+        if let (Small(a), Small(b)) = (&self.0, &other.0)
+            && let (Some(quotient), Some(rest)) = (a.checked_div(*b), a.checked_rem(*b))
+        {
+            return (Self(Small(quotient)), Self(Small(rest)));
         }
         let (quotient, rest) = self.to_bigint().div_rem(&other.to_bigint());
         (Self::from_big(quotient), Self::from_big(rest))
@@ -187,10 +187,10 @@ impl Integer {
     /// self^exponent
     #[must_use]
     pub fn pow(&self, exponent: u32) -> Self {
-        if let Small(value) = &self.0 {
-            if let Some(power) = value.checked_pow(exponent) {
-                return Self(Small(power));
-            }
+        if let Small(value) = &self.0
+            && let Some(power) = value.checked_pow(exponent)
+        {
+            return Self(Small(power));
         }
         Self::from_big(num_traits::pow(self.to_bigint(), exponent as usize))
     }

@@ -146,7 +146,7 @@ impl PrimeField {
 
 /// Miller–Rabin with the bases that decide all 64-bit numbers (Jaeschke 1993; Sorenson & Webster 2017).
 fn is_prime(candidate: u64) -> bool {
-    if candidate % 2 == 0 {
+    if candidate.is_multiple_of(2) {
         return candidate == 2;
     }
     let field = PrimeField { prime: candidate };
@@ -155,7 +155,7 @@ fn is_prime(candidate: u64) -> bool {
     [2, 3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37]
         .iter()
         .all(|&base| {
-            if candidate % base == 0 {
+            if candidate.is_multiple_of(base) {
                 return candidate == base;
             }
             let mut power = field.pow(base, odd);

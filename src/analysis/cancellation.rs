@@ -592,14 +592,19 @@ pub(crate) fn whole(
     }
     let released = solved.pairing.lucky(setting.network, SEED, 1, &|_| true)?;
     let field = solved.pairing.field();
-    let structural = released.numerator.gcd(&released.denominator, field).degree()?;
+    let structural = released
+        .numerator
+        .gcd(&released.denominator, field)
+        .degree()?;
     let degree = reduced.common.degree(Symbol::S);
     let class = if structural >= degree as usize {
         CancellationClass::Structural
     } else {
         CancellationClass::Matched
     };
-    let (written, _) = setting.couplings.written(&reduced.common, &Polynomial::one());
+    let (written, _) = setting
+        .couplings
+        .written(&reduced.common, &Polynomial::one());
     Some(vec![Cancellation {
         class,
         factor: with_positive_lead(&written, names),
@@ -622,10 +627,10 @@ pub(crate) fn nominal(
     couplings: &Couplings,
     symbol: Symbol,
 ) -> Option<Rational> {
-    if let Some(facts) = network.facts(symbol) {
-        if let Some(found) = &facts.nominal {
-            return Some(found.clone());
-        }
+    if let Some(facts) = network.facts(symbol)
+        && let Some(found) = &facts.nominal
+    {
+        return Some(found.clone());
     }
     if network.set_by(symbol).is_some() {
         let value = plain.value(symbol);

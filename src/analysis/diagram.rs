@@ -134,7 +134,7 @@ fn is_odd(sequence: &[u32]) -> bool {
             at = position[&sequence[at]];
             length += 1;
         }
-        odd ^= length > 0 && length % 2 == 0;
+        odd ^= length > 0 && length.is_multiple_of(2);
     }
     odd
 }

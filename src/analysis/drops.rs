@@ -22,20 +22,20 @@ pub(crate) fn drops(
     if leading.is_constant() {
         return Ok((Vec::new(), BTreeSet::new()));
     }
-    if let Some(judgement) = knowledge.judge(leading) {
-        if judgement.sign.is_never_zero() {
-            return Ok((vec![never(leading, names)], judgement.relied_on));
-        }
+    if let Some(judgement) = knowledge.judge(leading)
+        && judgement.sign.is_never_zero()
+    {
+        return Ok((vec![never(leading, names)], judgement.relied_on));
     }
     let mut open = Vec::new();
     let mut relied_on = BTreeSet::new();
     for (condition, _) in factor(leading, budget)?.factors {
         let judgement = knowledge.judge(&condition);
-        if let Some(judgement) = judgement {
-            if judgement.sign.is_never_zero() {
-                relied_on.extend(judgement.relied_on);
-                continue;
-            }
+        if let Some(judgement) = judgement
+            && judgement.sign.is_never_zero()
+        {
+            relied_on.extend(judgement.relied_on);
+            continue;
         }
         let example = knowledge.zero_of(&condition);
         open.push(Drop {

@@ -101,13 +101,14 @@ fn reason(network: &Network, part: ElementId) -> Option<String> {
                     .iter()
                     .any(|(_, terminal)| *terminal == node)
             });
-            if let Kind::Source(source) = &network.element(other).kind {
-                if source.quantity == Quantity::Current && !is_sensed {
-                    return Some(format!(
-                        "{} drives its current",
-                        network.element(other).name
-                    ));
-                }
+            if let Kind::Source(source) = &network.element(other).kind
+                && source.quantity == Quantity::Current
+                && !is_sensed
+            {
+                return Some(format!(
+                    "{} drives its current",
+                    network.element(other).name
+                ));
             }
         }
     }

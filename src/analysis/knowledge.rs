@@ -211,10 +211,10 @@ impl<'a> Knowledge<'a> {
     /// A value to try for a symbol: its nominal first, then small numbers.
     pub(crate) fn trial(&self, symbol: Symbol, attempt: usize) -> Rational {
         let facts = self.network.facts(symbol);
-        if attempt == 0 {
-            if let Some(nominal) = facts.and_then(|facts| facts.nominal.clone()) {
-                return nominal;
-            }
+        if attempt == 0
+            && let Some(nominal) = facts.and_then(|facts| facts.nominal.clone())
+        {
+            return nominal;
         }
         let spread = (symbol.index() * 7 + attempt * 13) % (2 + attempt);
         let number = i64::try_from(1 + spread).unwrap_or(1);

@@ -49,7 +49,7 @@ pub(crate) enum Paired {
 
 impl Pairing {
     /// The determinants of a question that is asked of the network itself.
-    pub(crate) fn new(
+    pub(crate) fn of(
         network: &Network,
         ask: &Ask,
         without: &[ElementId],

@@ -126,10 +126,10 @@ pub(crate) fn resolution_order(network: &Network) -> Vec<RelationId> {
             stack.push((id, true));
             for (_, value) in &network.relation(id).sets {
                 for symbol in value.symbols() {
-                    if let Some(needed) = network.set_by(symbol) {
-                        if !seen.contains(&needed) {
-                            stack.push((needed, false));
-                        }
+                    if let Some(needed) = network.set_by(symbol)
+                        && !seen.contains(&needed)
+                    {
+                        stack.push((needed, false));
                     }
                 }
             }

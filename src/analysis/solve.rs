@@ -108,10 +108,10 @@ pub(crate) fn solve(
     question: &Question,
 ) -> Result<Option<Result<Solved, Box<Diagnostic>>>, Exceeded> {
     let network = setting.network;
-    if let Ask::Impedance(port) = &question.ask {
-        if let Some(error) = shorted(network, *port, question) {
-            return Ok(Some(Err(Box::new(error))));
-        }
+    if let Ask::Impedance(port) = &question.ask
+        && let Some(error) = shorted(network, *port, question)
+    {
+        return Ok(Some(Err(Box::new(error))));
     }
     let short = match &question.ask {
         Ask::Admittance(port) => Some(*port),
@@ -139,7 +139,7 @@ pub(crate) fn solve(
             question: Some(question.place),
         }))
     };
-    let paired = Pairing::new(network, &question.ask, &question.without, setting.budget)?;
+    let paired = Pairing::of(network, &question.ask, &question.without, setting.budget)?;
     let pairing = match paired {
         None => return Ok(None),
         Some(Paired::Singular(singular)) => return Ok(Some(Err(explain(&singular.elements)))),

@@ -211,15 +211,19 @@ fn words<'a>(text: &'a str, is_in: &dyn Fn(char) -> bool) -> Vec<(usize, &'a str
 
 fn bench_offer(word: &str) -> Option<String> {
     let letters = |text: &str| text.chars().any(char::is_alphabetic);
-    if let Some(name) = word.strip_suffix('+') {
-        if !name.is_empty() && letters(name) && name.chars().all(is_name_char) {
-            return Some(format!("{}_p", name.to_lowercase()));
-        }
+    if let Some(name) = word.strip_suffix('+')
+        && !name.is_empty()
+        && letters(name)
+        && name.chars().all(is_name_char)
+    {
+        return Some(format!("{}_p", name.to_lowercase()));
     }
-    if let Some(name) = word.strip_suffix(['-', '−']) {
-        if !name.is_empty() && letters(name) && name.chars().all(is_name_char) {
-            return Some(format!("{}_n", name.to_lowercase()));
-        }
+    if let Some(name) = word.strip_suffix(['-', '−'])
+        && !name.is_empty()
+        && letters(name)
+        && name.chars().all(is_name_char)
+    {
+        return Some(format!("{}_n", name.to_lowercase()));
     }
     let unsigned = word.strip_prefix('+').unwrap_or(word);
     if unsigned.starts_with(|c: char| c.is_ascii_digit())

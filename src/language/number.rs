@@ -138,11 +138,11 @@ pub(crate) fn read(
         }
     }
     if let Some(reading) = reading {
-        literal.suffix = Some(Suffix {
+        literal.suffix = Some(Box::new(Suffix {
             text: suffix.to_owned(),
             reading: format!("{magnitude} {reading}"),
             number: magnitude.to_owned(),
-        });
+        }));
     }
     literal.value = value;
     Ok(literal)
@@ -192,14 +192,12 @@ fn decimal(text: &str) -> Result<Rational, NumberError> {
 fn decibels(value: &Rational) -> (Rational, bool) {
     let twentieth =
         value * &ten(-1) * Rational::new(1.into(), 2.into()).unwrap_or_else(Rational::one);
-    if twentieth.is_integer() {
-        if let Some(exponent) = twentieth.numerator().to_i64() {
-            if let Ok(exponent) = i32::try_from(exponent) {
-                if exponent.abs() <= MAX_EXPONENT {
-                    return (ten(exponent), false);
-                }
-            }
-        }
+    if twentieth.is_integer()
+        && let Some(exponent) = twentieth.numerator().to_i64()
+        && let Ok(exponent) = i32::try_from(exponent)
+        && exponent.abs() <= MAX_EXPONENT
+    {
+        return (ten(exponent), false);
     }
     (root_of_power(&twentieth), true)
 }

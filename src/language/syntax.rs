@@ -49,7 +49,7 @@ pub struct Literal {
     /// Stated in per cent.
     pub percent: bool,
     /// The unit or prefix as written, when it could also be a name.
-    pub suffix: Option<Suffix>,
+    pub suffix: Option<Box<Suffix>>,
     /// A decibel value that is no multiple of 20 and was rounded.
     pub rounded: bool,
     /// Where.
@@ -155,7 +155,7 @@ pub enum StatementKind {
     /// A path.
     Path(Vec<Name>, Vec<Link>),
     /// `R1, R2 : 10 kΩ`
-    Parts(Vec<Listed>, PartValue),
+    Parts(Vec<Listed>, Box<PartValue>),
     /// `a = b = expression`
     Relation {
         /// Names that are set.
@@ -185,7 +185,7 @@ pub enum StatementKind {
         /// Names.
         names: Vec<Name>,
         /// Nominal, tolerance, range.
-        value: Option<PartValue>,
+        value: Option<Box<PartValue>>,
         /// `real`.
         real: bool,
         /// `in a .. b`.
@@ -258,7 +258,7 @@ pub enum Link {
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Group {
     /// A designator with its value in place.
-    One(Name, Option<PartValue>),
+    One(Name, Option<Box<PartValue>>),
     /// `||`
     Parallel(Vec<Group>),
     /// `+`

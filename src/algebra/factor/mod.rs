@@ -141,10 +141,10 @@ fn content_in_some(
                 break;
             }
         }
-        if !content.is_constant() {
-            if let Some(rest) = polynomial.div_exact(&content) {
-                return Ok(Some((content, rest)));
-            }
+        if !content.is_constant()
+            && let Some(rest) = polynomial.div_exact(&content)
+        {
+            return Ok(Some((content, rest)));
         }
     }
     Ok(None)

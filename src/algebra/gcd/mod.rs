@@ -156,7 +156,10 @@ fn along_each(
     for (monomial, coefficient) in polynomial.terms() {
         let mut value = field.from_integer(coefficient);
         for (symbol, exponent) in monomial.factors() {
-            value = field.mul(value, field.pow(values[place(symbol)].0, u64::from(exponent)));
+            value = field.mul(
+                value,
+                field.pow(values[place(symbol)].0, u64::from(exponent)),
+            );
         }
         totals = field.add(totals, value);
         for (symbol, exponent) in monomial.factors() {

@@ -52,7 +52,11 @@ impl Residue {
         let low = u64::try_from(product & u128::from(PRIME)).unwrap_or(0);
         let high = u64::try_from(product >> 61).unwrap_or(0);
         let folded = low + high;
-        Self(if folded >= PRIME { folded - PRIME } else { folded })
+        Self(if folded >= PRIME {
+            folded - PRIME
+        } else {
+            folded
+        })
     }
 
     /// self^exponent

@@ -392,15 +392,16 @@ impl Lowering<'_> {
             });
         };
         let linear = self.linear(&value, &waiting.scope, VALUES)?;
-        if let (Some(found), Some(wanted)) = (linear.dimension, dimension) {
-            if found != wanted && !has_name(&value) {
-                self.error(
-                    value.place,
-                    format!("this unit does not fit {option}"),
-                    format!("{option} of a {} is {}", row.name, unit_word(wanted)),
-                );
-                return Err(Reported);
-            }
+        if let (Some(found), Some(wanted)) = (linear.dimension, dimension)
+            && found != wanted
+            && !has_name(&value)
+        {
+            self.error(
+                value.place,
+                format!("this unit does not fit {option}"),
+                format!("{option} of a {} is {}", row.name, unit_word(wanted)),
+            );
+            return Err(Reported);
         }
         if let Some(number) = linear.constant.as_rational() {
             return Ok(Some(Value::Number(number)));
@@ -794,14 +795,15 @@ impl Lowering<'_> {
                 }
             }
         };
-        if let Value::Number(number) = &value {
-            if !is_mutual && number.abs() > Rational::one() {
-                self.messages.push(
-                    Diagnostic::error(place, "the coupling factor is beyond 1")
-                        .help("k lies between -1 and 1"),
-                );
-                return None;
-            }
+        if let Value::Number(number) = &value
+            && !is_mutual
+            && number.abs() > Rational::one()
+        {
+            self.messages.push(
+                Diagnostic::error(place, "the coupling factor is beyond 1")
+                    .help("k lies between -1 and 1"),
+            );
+            return None;
         }
         Some(if is_mutual {
             Strength::Mutual(value)

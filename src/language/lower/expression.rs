@@ -266,8 +266,17 @@ impl Lowering<'_> {
         let mut hertz = false;
         let mut has_s = false;
         let mut has_pi = false;
+        let plain_number = |factor: &Expression| match &factor.node {
+            ExpressionNode::Number(literal) => literal.dimension.is_none(),
+            _ => false,
+        };
+        // A number without a unit may be a value in SI units; as a factor it is a pure number.
+        let all_plain = factors.iter().all(|(_, factor)| plain_number(factor));
         for (over, factor) in factors {
-            let value = self.linear(factor, scope, allowed)?;
+            let mut value = self.linear(factor, scope, allowed)?;
+            if plain_number(factor) && !all_plain {
+                value.dimension = Some(Dimension::NUMBER);
+            }
             if let ExpressionNode::Name(name) = &factor.node {
                 let text = plain(name);
                 has_s |= text == "s";
@@ -384,14 +393,15 @@ impl Lowering<'_> {
         sign: &str,
         place: Span,
     ) {
-        if let (Some(a), Some(b)) = (left, right) {
-            if a != b && a.kelvin == b.kelvin {
-                self.error(
-                    place,
-                    format!("the two sides of {sign} have unlike dimensions"),
-                    "resistances are added to resistances, products R*C to times, and so on",
-                );
-            }
+        if let (Some(a), Some(b)) = (left, right)
+            && a != b
+            && a.kelvin == b.kelvin
+        {
+            self.error(
+                place,
+                format!("the two sides of {sign} have unlike dimensions"),
+                "resistances are added to resistances, products R*C to times, and so on",
+            );
         }
     }
 
@@ -420,18 +430,18 @@ impl Lowering<'_> {
         }
         let global = scope.own(&text);
         // `A1.R` is the parameter of an instance that has a symbol of its own.
-        if let Some((instance, parameter)) = global.rsplit_once('.') {
-            if let Some(inner) = self.instances.get(instance).cloned() {
-                if inner.parameters.contains_key(parameter) && !self.names.contains_key(&global) {
-                    let inner_name = Name {
-                        parts: vec![crate::language::syntax::NamePart::Text(
-                            parameter.to_owned(),
-                        )],
-                        place: name.place,
-                    };
-                    return self.name_value(&inner_name, &inner, allowed);
-                }
-            }
+        if let Some((instance, parameter)) = global.rsplit_once('.')
+            && let Some(inner) = self.instances.get(instance).cloned()
+            && inner.parameters.contains_key(parameter)
+            && !self.names.contains_key(&global)
+        {
+            let inner_name = Name {
+                parts: vec![crate::language::syntax::NamePart::Text(
+                    parameter.to_owned(),
+                )],
+                place: name.place,
+            };
+            return self.name_value(&inner_name, &inner, allowed);
         }
         self.used.insert(global.clone());
         let Some(entry) = self.names.get(&global).cloned() else {
@@ -451,10 +461,11 @@ impl Lowering<'_> {
                     return Ok(self.symbol_value(&global));
                 }
                 let is_source = matches!(element.kind, Kind::Source(_));
-                if allowed.drives && is_source {
-                    if let Some(&drive) = self.drive_ids.get(&global) {
-                        return Ok(self.drive_value(drive));
-                    }
+                if allowed.drives
+                    && is_source
+                    && let Some(&drive) = self.drive_ids.get(&global)
+                {
+                    return Ok(self.drive_value(drive));
                 }
                 let help = if is_source && allowed.drives {
                     format!("{text} is a controlled source; ask over an independent source")

@@ -53,7 +53,7 @@ pub(crate) struct RawPart {
     pub(crate) name: String,
     pub(crate) from: usize,
     pub(crate) to: usize,
-    pub(crate) value: Option<PartValue>,
+    pub(crate) value: Option<Box<PartValue>>,
     pub(crate) place: Span,
     pub(crate) scope: Rc<Scope>,
 }
@@ -61,7 +61,7 @@ pub(crate) struct RawPart {
 /// A value that waits for its symbol.
 pub(crate) struct Nominal {
     pub(crate) name: String,
-    pub(crate) value: PartValue,
+    pub(crate) value: Box<PartValue>,
     pub(crate) place: Span,
     pub(crate) scope: Rc<Scope>,
 }
@@ -161,6 +161,7 @@ impl Lowering<'_> {
                 _ => rest.push((statement, scope)),
             }
         }
+        self.check_reference();
         self.introduce(&rest);
         self.set_nominals(&rest);
         for device in &devices {

@@ -477,6 +477,11 @@ impl Lowering<'_> {
         let Ok(value) = self.fraction(value, scope) else {
             return;
         };
+        self.warning(
+            place,
+            "initial values are read, but no command of this version uses them",
+            "they come with the state equations",
+        );
         self.builder.start(Start {
             element: id,
             value,

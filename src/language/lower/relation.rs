@@ -8,6 +8,7 @@ use crate::algebra::{Fraction, Polynomial, Rational, Symbol};
 use crate::diagnostic::Diagnostic;
 use crate::language::expand::{Given, Scope, has_name, plain};
 use crate::language::lower::expression::{Allowed, Linear, VALUES};
+use crate::language::lower::value::unit_of;
 use crate::language::lower::{Lowering, RawRelation, What};
 use crate::language::nearest::nearest;
 use crate::language::syntax::{Expression, ExpressionNode};
@@ -187,14 +188,15 @@ impl Lowering<'_> {
                 );
                 return;
             }
-            if let (Some(a), Some(b)) = (facts.dimension, linear.dimension) {
-                if a != b && !is_number(&relation.right) {
-                    self.warning(
-                        relation.right.place,
-                        format!("the dimension of this value does not fit {}", relation.left),
-                        "check the expression; nothing is converted",
-                    );
-                }
+            if let (Some(a), Some(b)) = (facts.dimension, linear.dimension)
+                && a != b
+                && !is_number(&relation.right)
+            {
+                self.warning(
+                    relation.right.place,
+                    format!("the dimension of this value does not fit {}", relation.left),
+                    "check the expression; nothing is converted",
+                );
             }
         }
         let value = linear.constant;

@@ -196,8 +196,9 @@ impl Lowering<'_> {
     }
 
     fn override_nominals(&mut self) {
-        for (name, text) in self.set.to_vec() {
-            if self.set_done.contains(&name) {
+        let set = self.set;
+        for (name, text) in set {
+            if self.set_done.contains(name) {
                 continue;
             }
             let place = self
@@ -205,8 +206,8 @@ impl Lowering<'_> {
                 .network()
                 .node(crate::network::NodeId::GROUND)
                 .place;
-            match parse_value(place, &text) {
-                Ok(value) if self.names.contains_key(&name) => {
+            match parse_value(place, text) {
+                Ok(value) if self.names.contains_key(name) => {
                     let nominal = Nominal {
                         name: name.clone(),
                         value,
@@ -216,7 +217,7 @@ impl Lowering<'_> {
                     self.nominal(&nominal, true);
                 }
                 Ok(_) => {
-                    let near = nearest(&name, self.names.keys().map(String::as_str));
+                    let near = nearest(name, self.names.keys().map(String::as_str));
                     let help = near.map_or_else(
                         || "names of parts, free symbols and let can be set".to_owned(),
                         |near| format!("did you mean {near}?"),
@@ -266,23 +267,30 @@ impl Lowering<'_> {
         let name = &nominal.name;
         if !self.names.contains_key(name) {
             // The parameter of an instance gets its symbol when it is first used.
-            if let Some((instance, parameter)) = name.rsplit_once('.') {
-                if let Some(inner) = self.instances.get(instance).cloned() {
-                    if inner.parameters.contains_key(parameter) {
-                        let own = Name {
-                            parts: vec![crate::language::syntax::NamePart::Text(
-                                parameter.to_owned(),
-                            )],
-                            place: nominal.place,
-                        };
-                        let expression = Expression {
-                            node: crate::language::syntax::ExpressionNode::Name(own),
-                            place: nominal.place,
-                        };
-                        let _ = self.linear(&expression, &inner, VALUES);
-                    }
-                }
+            if let Some((instance, parameter)) = name.rsplit_once('.')
+                && let Some(inner) = self.instances.get(instance).cloned()
+                && inner.parameters.contains_key(parameter)
+            {
+                let own = Name {
+                    parts: vec![crate::language::syntax::NamePart::Text(
+                        parameter.to_owned(),
+                    )],
+                    place: nominal.place,
+                };
+                let expression = Expression {
+                    node: crate::language::syntax::ExpressionNode::Name(own),
+                    place: nominal.place,
+                };
+                let _ = self.linear(&expression, &inner, VALUES);
             }
+        }
+        if self.drive_ids.contains_key(name)
+            && matches!(
+                self.names.get(name).map(|entry| &entry.what),
+                Some(What::Drive(_))
+            )
+        {
+            return;
         }
         let Some(symbol) = self.builder.symbols().find(name) else {
             let near = nearest(name, self.names.keys().map(String::as_str));
@@ -347,15 +355,15 @@ impl Lowering<'_> {
             .iter()
             .chain(value.range.iter().flat_map(|(low, high)| [low, high]));
         for literal in literals.cloned().collect::<Vec<_>>() {
-            if let Some(found) = literal.dimension {
-                if found != wanted {
-                    self.error(
-                        literal.place,
-                        format!("this unit does not fit {name}"),
-                        format!("{name} is {}", unit_of(wanted)),
-                    );
-                    return;
-                }
+            if let Some(found) = literal.dimension
+                && found != wanted
+            {
+                self.error(
+                    literal.place,
+                    format!("this unit does not fit {name}"),
+                    format!("{name} is {}", unit_of(wanted)),
+                );
+                return;
             }
         }
     }
@@ -379,14 +387,14 @@ impl Lowering<'_> {
                 ),
             );
         }
-        if let Some((low, high)) = &value.range {
-            if low.value > high.value {
-                self.error(
-                    high.place,
-                    "this range is empty",
-                    "write the lower end first",
-                );
-            }
+        if let Some((low, high)) = &value.range
+            && low.value > high.value
+        {
+            self.error(
+                high.place,
+                "this range is empty",
+                "write the lower end first",
+            );
         }
     }
 

@@ -150,13 +150,20 @@ impl Lowering<'_> {
             ids.push(id);
         }
         self.node_ids = ids;
-        self.check_reference();
         self.check_case();
     }
 
-    fn check_reference(&mut self) {
+    /// A reference is written, or a device stands on it by default.
+    pub(crate) fn check_reference(&mut self) {
         let place = self.node_names[0].1;
-        let is_written = place.start != 0 || place.end != 0;
+        let is_written = place.start != 0
+            || place.end != 0
+            || self.builder.network().devices().iter().any(|device| {
+                device
+                    .terminals
+                    .iter()
+                    .any(|(_, node)| *node == NodeId::GROUND)
+            });
         if is_written || self.node_names.len() == 1 {
             return;
         }
@@ -301,10 +308,8 @@ impl Lowering<'_> {
             Kind::Meter(port)
         } else {
             let symbol = self.new_symbol(&raw.name, Origin::Part, dimension, raw.place);
-            if !positive {
-                if let Some(facts) = self.builder.facts_mut(symbol) {
-                    facts.sign = Sign::Real;
-                }
+            if !positive && let Some(facts) = self.builder.facts_mut(symbol) {
+                facts.sign = Sign::Real;
             }
             let value = Value::Symbol(symbol);
             let source = |quantity| {
