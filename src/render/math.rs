@@ -12,8 +12,8 @@ use std::sync::Arc;
 
 use crate::algebra::Integer;
 pub use terms::{
-    by_powers_of_s, equation, for_reading, ordered_terms, polynomial, power_series, power_terms,
-    ratio,
+    by_powers_of_s, equation, factored_series, for_reading, ordered_terms, polynomial,
+    power_series, power_terms, ratio,
 };
 
 /// An expression to be written.

@@ -5,6 +5,8 @@
 
 pub mod answer;
 pub mod coefficients;
+#[cfg(test)]
+mod exactness;
 pub mod json;
 pub mod latex;
 pub mod ledger;

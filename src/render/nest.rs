@@ -12,10 +12,18 @@ type Terms = Vec<(Monomial, Integer)>;
 /// Cost: each step visits every remaining term; steps are bounded by symbols times degree.
 #[must_use]
 pub fn nested(polynomial: &Polynomial, names: &Names<'_>) -> Math {
-    nest(math::ordered_terms(polynomial, names), names)
+    product(
+        factors(math::ordered_terms(polynomial, names), names),
+        names,
+    )
 }
 
-fn nest(mut terms: Terms, names: &Names<'_>) -> Math {
+/// A factor with its first symbol in reading order, by which factors are put in order.
+type Factor = (Option<Symbol>, Math);
+
+/// The factors of what these terms add up to.
+fn factors(mut terms: Terms, names: &Names<'_>) -> Vec<Factor> {
+    let first = first_symbol(&terms, names);
     let mut parts: Vec<Part> = Vec::new();
     while let Some((symbol, exponent)) = most_shared(&terms, names) {
         let divisor = Monomial::power(symbol, exponent);
@@ -26,58 +34,74 @@ fn nest(mut terms: Terms, names: &Names<'_>) -> Math {
             .into_iter()
             .filter_map(|(monomial, coefficient)| Some((monomial.div(&divisor)?, coefficient)))
             .collect();
-        let before = stands_before(symbol, &inner, names);
         let taken = Math::name(names.name(symbol)).power(exponent);
-        join(&mut parts, symbol, before, taken, nest(inner, names));
+        join(&mut parts, symbol, taken, factors(inner, names), names);
         terms = without;
     }
     parts.sort_by(|left, right| names.by_reading(left.symbol, right.symbol));
+    if let ([_], true) = (parts.as_slice(), terms.is_empty()) {
+        return parts.remove(0).factors();
+    }
     let rest = math::polynomial(&Polynomial::from_terms(terms), names);
-    let parts = parts.into_iter().map(Part::product).chain([rest]);
-    Math::sum(parts.filter(|part| !is_zero(part)))
+    let products = parts.into_iter().map(|part| product(part.factors(), names));
+    let sum = products.chain([rest]).filter(|part| !is_zero(part));
+    vec![(first, Math::sum(sum).positive_first())]
 }
 
-/// What was taken out, and what it leaves.
+fn product(mut factors: Vec<Factor>, names: &Names<'_>) -> Math {
+    factors.sort_by(|(left, _), (right, _)| match (left, right) {
+        (Some(left), Some(right)) => names.by_reading(*left, *right),
+        _ => left.is_some().cmp(&right.is_some()),
+    });
+    Math::product(factors.into_iter().map(|(_, math)| math))
+}
+
+/// What was taken out, and the product it leaves.
 struct Part {
     symbol: Symbol,
-    before: bool,
     taken: Vec<Math>,
-    inner: Math,
+    inner: Vec<Factor>,
+    whole: Math,
 }
 
 impl Part {
-    fn product(mut self) -> Math {
-        let taken = if self.taken.len() > 1 {
-            self.taken.reverse();
-            Math::sum(self.taken)
-        } else {
-            Math::product(self.taken)
-        };
-        if self.before {
-            Math::product([taken, self.inner])
-        } else {
-            Math::product([self.inner, taken])
-        }
+    fn factors(mut self) -> Vec<Factor> {
+        self.taken.reverse();
+        let taken = Math::sum(self.taken).positive_first();
+        self.inner.push((Some(self.symbol), taken));
+        self.inner
     }
 }
 
-/// Puts what was taken out beside the others that leave the same: `(R1 + R2)·(C1 + C2)`.
-fn join(parts: &mut Vec<Part>, symbol: Symbol, before: bool, taken: Math, inner: Math) {
-    match parts.iter_mut().find(|part| part.inner == inner) {
-        Some(part) => part.taken.push(taken),
+/// Puts what was taken out beside the others that leave the same, the sign aside:
+/// `(R1 − R2)·(C1 + C2)`.
+fn join(parts: &mut Vec<Part>, symbol: Symbol, taken: Math, inner: Vec<Factor>, names: &Names<'_>) {
+    let (negative, whole) = product(inner.clone(), names).split_sign();
+    let turned = taken.clone().signed(negative);
+    match parts.iter_mut().find(|part| part.whole == whole) {
+        Some(part) => part.taken.push(turned),
         None => parts.push(Part {
             symbol,
-            before,
-            taken: vec![taken],
-            inner,
+            taken: vec![turned],
+            inner: without_sign(inner, negative),
+            whole,
         }),
     }
 }
 
-/// Whether a symbol stands before all that is left, as an engineer writes.
-fn stands_before(symbol: Symbol, inner: &Terms, names: &Names<'_>) -> bool {
-    let mut symbols = inner.iter().flat_map(|(monomial, _)| monomial.factors());
-    symbols.all(|(other, _)| names.by_reading(symbol, other).is_lt())
+/// The factors of minus the product, where that is asked for.
+fn without_sign(mut factors: Vec<Factor>, negative: bool) -> Vec<Factor> {
+    if negative {
+        factors.push((None, Math::integer(&Integer::from(-1_i64))));
+    }
+    factors
+}
+
+fn first_symbol(terms: &Terms, names: &Names<'_>) -> Option<Symbol> {
+    let symbols = terms.iter().flat_map(|(monomial, _)| monomial.factors());
+    symbols
+        .map(|(symbol, _)| symbol)
+        .min_by(|left, right| names.by_reading(*left, *right))
 }
 
 /// The symbol that stands in most terms, at least two, and its least exponent there; of several the

@@ -17,6 +17,8 @@ const MOST_TERMS: usize = 16;
 /// A function over τ, ω0 and Q.
 #[derive(Clone, Debug)]
 pub struct StandardForm {
+    /// Whether a minus stands in front.
+    pub negative: bool,
     /// What stands in front, where it is not one.
     pub gain: Option<Math>,
     /// The fraction.
@@ -47,7 +49,9 @@ pub fn standard(formula: &Expanded, names: &Names<'_>) -> Option<StandardForm> {
     if taken || leaves + gain.leaves() > LONGEST {
         return None;
     }
+    let (negative, gain) = gain.split_sign();
     Some(StandardForm {
+        negative,
         gain: (!is_one(&gain)).then_some(gain),
         fraction: Math::quotient(above, below),
         definitions: writer.definitions,

@@ -24,8 +24,8 @@ fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
     if coefficients::manner(formula) != Manner::InPlace {
         return with_definitions(function, &coefficients::named(formula, names));
     }
-    let above = math::power_series(&formula.numerator, names);
-    let below = math::power_series(&formula.denominator, names);
+    let above = math::factored_series(&formula.numerator, names);
+    let below = math::factored_series(&formula.denominator, names);
     let left = left_side(function, formula);
     let room = LINE - 60;
     if width(&above) <= room && width(&below) <= room {
@@ -50,8 +50,9 @@ fn in_designers_terms(left: &str, right: &str, form: &StandardForm) -> String {
         format!("{open}{}{close} \\cdot ", spell(gain))
     });
     let fraction = spell(&form.fraction);
+    let sign = if form.negative { "-" } else { "" };
     let first = format!(
-        "{left} &= {right} \\\\\n  &= {}{fraction}",
+        "{left} &= {right} \\\\\n  &= {sign}{}{fraction}",
         gain.unwrap_or_default()
     );
     let sides: Vec<Side> = form

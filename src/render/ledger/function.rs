@@ -1,5 +1,6 @@
 //! The account of one function.
 
+use crate::algebra::Symbol;
 use crate::analysis::report::{Cancellation, Drop, FunctionReport, Hides, Verdict};
 use crate::network::{Ask, CancellationClass};
 use crate::render::answer::Answer;
@@ -33,7 +34,9 @@ pub fn function(answer: &Answer<'_>, result: &FunctionReport) -> Vec<Line> {
         format!("order of {}", result.name),
         order_evidence(answer, result),
     ));
-    lines.extend(drop_lines(answer, result));
+    if result.order > 0 {
+        lines.extend(drop_lines(answer, result));
+    }
     lines.extend(no_effect_line(answer, result));
     lines
 }
@@ -112,6 +115,7 @@ fn structural(it: &Cancellation) -> String {
         return format!("static mode of {}", listed(&it.static_set));
     }
     match it.parts.as_slice() {
+        [] if it.factor.as_symbol() == Some(Symbol::S) => "a static mode (at s = 0)".to_owned(),
         [] => "whatever the values".to_owned(),
         [part] => format!("{part} leaves the answer"),
         parts => format!("{} leave the answer", listed(parts)),

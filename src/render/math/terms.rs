@@ -54,6 +54,34 @@ pub fn power_series(coefficients: &[Polynomial], names: &Names<'_>) -> Math {
     Math::sum(power_terms(coefficients, names))
 }
 
+/// The same with the number, the symbols and the power of s that all terms share in front:
+/// `s·C1·(1 + s·R2·C1)`.
+#[must_use]
+pub fn factored_series(coefficients: &[Polynomial], names: &Names<'_>) -> Math {
+    let Some(lowest) = coefficients.iter().position(|it| !it.is_zero()) else {
+        return power_series(coefficients, names);
+    };
+    let present = || coefficients.iter().filter(|it| !it.is_zero());
+    let number = present().fold(Integer::zero(), |gcd, it| gcd.gcd(&it.content()));
+    let symbols = present()
+        .map(Polynomial::monomial_content)
+        .reduce(|gcd, it| gcd.gcd(&it))
+        .unwrap_or_else(Monomial::one);
+    let shared = Polynomial::monomial(number, symbols);
+    let reduced: Option<Vec<Polynomial>> = coefficients[lowest..]
+        .iter()
+        .map(|it| it.div_exact(&shared))
+        .collect();
+    let power = u32::try_from(lowest).unwrap_or(u32::MAX);
+    let front = shared.mul_monomial(&Monomial::power(Symbol::S, power));
+    match reduced {
+        Some(reduced) if reduced.len() > 1 && !front.is_one() => {
+            Math::product([polynomial(&front, names), power_series(&reduced, names)])
+        }
+        _ => power_series(coefficients, names),
+    }
+}
+
 /// Coefficients of s^0, s^1, …, each with its power; zero coefficients are left out.
 #[must_use]
 pub fn power_terms(coefficients: &[Polynomial], names: &Names<'_>) -> Vec<Math> {

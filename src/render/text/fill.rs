@@ -23,7 +23,9 @@ pub(super) fn words(items: &[String], between: &str, width: usize) -> Vec<String
                 line.push_str(item);
             }
             Some(line) => {
-                line.push_str(between.trim_end());
+                if between.starts_with(',') {
+                    line.push(',');
+                }
                 lines.push(item.clone());
             }
             None => lines.push(item.clone()),

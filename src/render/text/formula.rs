@@ -137,7 +137,8 @@ fn frequency_limits(name: &str, formula: &Expanded, names: &Names<'_>, page: &Pa
 
 /// The same in gain, time constants, frequencies.
 fn in_designers_terms(form: &StandardForm, left: usize, page: &Page) -> String {
-    let mut blocks = vec![Block::text(format!("{}=  ", " ".repeat(left - 3)))];
+    let sign = if form.negative { "− " } else { "" };
+    let mut blocks = vec![Block::text(format!("{}=  {sign}", " ".repeat(left - 3)))];
     if let Some(gain) = &form.gain {
         blocks.push(Block::within(gain, Within::Product));
         blocks.push(Block::text(" · "));
@@ -163,7 +164,7 @@ fn in_designers_terms(form: &StandardForm, left: usize, page: &Page) -> String {
 
 /// On one line where it fits, else one power of s a line, long coefficients broken.
 fn polynomial_lines(coefficients: &[Polynomial], names: &Names<'_>, width: usize) -> Vec<String> {
-    let line = READING.spell(&math::power_series(coefficients, names));
+    let line = READING.spell(&math::factored_series(coefficients, names));
     if columns(&line) <= width {
         return vec![line];
     }

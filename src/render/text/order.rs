@@ -22,7 +22,9 @@ pub(super) fn network(answer: &Answer<'_>, page: &Page) -> String {
 pub(super) fn function(answer: &Answer<'_>, result: &FunctionReport, page: &Page) -> String {
     let mut text = heading(answer, result, page);
     text.push_str(&columns::draw(&ledger::function(answer, result), page));
-    text.push_str(&relied_on(&result.relied_on, page));
+    if result.order > 0 {
+        text.push_str(&relied_on(&result.relied_on, page));
+    }
     text
 }
 
