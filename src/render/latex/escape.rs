@@ -3,7 +3,7 @@
 /// Text with the characters LaTeX takes for commands made harmless.
 pub(super) fn escape(text: &str) -> String {
     let mut escaped = String::new();
-    for letter in text.chars() {
+    for letter in text.replace("->", "→").chars() {
         match letter {
             '\\' => escaped.push_str("\\textbackslash{}"),
             '{' | '}' | '$' | '&' | '#' | '_' | '%' => {
@@ -12,6 +12,7 @@ pub(super) fn escape(text: &str) -> String {
             }
             '~' => escaped.push_str("\\textasciitilde{}"),
             '^' => escaped.push_str("\\textasciicircum{}"),
+            '→' => escaped.push_str("$\\to$"),
             '<' => escaped.push_str("$<$"),
             '>' => escaped.push_str("$>$"),
             '−' => escaped.push_str("$-$"),
@@ -46,6 +47,9 @@ pub(super) fn name(name: &str) -> String {
 }
 
 fn base_and_rest(own: &str) -> (String, &str) {
+    if own == "eps" {
+        return ("\\varepsilon".to_owned(), "");
+    }
     if let Some((word, rest)) = greek_word(own) {
         return (format!("\\{word}"), rest);
     }
@@ -65,7 +69,7 @@ fn base_and_rest(own: &str) -> (String, &str) {
 fn is_word(own: &str) -> bool {
     let letters = own.chars().count();
     let all = |test: fn(char) -> bool| own.chars().all(test);
-    (letters > 1 && all(|letter| letter.is_ascii_uppercase()))
+    (letters > 2 && all(|letter| letter.is_ascii_uppercase()))
         || (letters > 3 && all(|letter| letter.is_ascii_lowercase()))
 }
 
@@ -156,6 +160,8 @@ mod tests {
             ("A1.R2", "R_{\\mathrm{A1},2}"),
             ("CMRR", "\\mathrm{CMRR}"),
             ("gain", "\\mathrm{gain}"),
+            ("CD", "C_{\\mathrm{D}}"),
+            ("eps", "\\varepsilon"),
             ("omega0", "\\omega_{0}"),
             ("τ2", "\\tau_{2}"),
             ("Zload", "Z_{\\mathrm{load}}"),
