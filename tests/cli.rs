@@ -151,7 +151,7 @@ fn claims_decide_the_status_of_check() {
     let claim = |claim: &str| format!("{LOW_PASS}; claim {claim}");
     let cases = [
         ("order(H) = 1", 0, "1 claim holds"),
-        ("order(H) = 2", 1, "1 refuted"),
+        ("order(H) = 2", 1, "1 claim refuted"),
     ];
     for (text, expected, summary) in cases {
         let output = cutloop(&["check", "-e", &claim(text)]);
