@@ -35,7 +35,13 @@ pub fn resultant(
 }
 
 /// Determinant of a square matrix of polynomials; 1 for the empty one.
-fn determinant(mut rows: Vec<Vec<Polynomial>>, budget: &Budget) -> Result<Polynomial, Exceeded> {
+///
+/// # Errors
+/// When the budget is reached.
+pub fn determinant(
+    mut rows: Vec<Vec<Polynomial>>,
+    budget: &Budget,
+) -> Result<Polynomial, Exceeded> {
     let size = rows.len();
     let mut before = Polynomial::one();
     let mut negative = false;

@@ -17,11 +17,11 @@ use crate::analysis::relations::Substitution;
 use crate::analysis::report::{
     Expanded, Failure, Formula, FunctionReport, NetworkOrder, Report, Wanted,
 };
-use crate::analysis::solve::{Setting, Solved, network_degrees, solve};
+use crate::analysis::solve::{Setting, Solved, natural_polynomial, network_degrees, solve};
 use crate::analysis::witness;
 use crate::budget::{Budget, Exceeded};
 use crate::diagnostic::Diagnostic;
-use crate::network::{Ask, Network};
+use crate::network::{Ask, Assertion, Network};
 
 /// Answers what is wanted of a network.
 ///
@@ -322,11 +322,18 @@ impl Run<'_> {
             reports.iter().find(|report| report.question == index)
         };
         let function = |symbol: Symbol| known.get(&symbol).cloned();
+        let natural = network
+            .claims()
+            .iter()
+            .any(|claim| matches!(claim.assertion, Assertion::Stable { .. }))
+            .then(|| natural_polynomial(&self.setting).ok().flatten())
+            .flatten();
         let evidence = Evidence {
             network,
             substitution: self.setting.rooted,
             couplings: self.setting.couplings,
             knowledge: &self.knowledge,
+            natural: natural.as_ref(),
             order: self.order,
             function: &function,
             report: &report_of,

@@ -7,6 +7,7 @@ use crate::analysis::relations::Substitution;
 use crate::analysis::report::{
     Cancellation, ClaimReport, Finding, FunctionReport, NetworkOrder, Verdict,
 };
+use crate::analysis::stability::decide;
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Assertion, CancellationClass, Claim, ClaimedValue, Network, Side, Subject};
 
@@ -20,6 +21,8 @@ pub(crate) struct Evidence<'a> {
     pub(crate) couplings: &'a Couplings,
     /// Its signs.
     pub(crate) knowledge: &'a Knowledge<'a>,
+    /// The polynomial of its natural frequencies, when it was completed.
+    pub(crate) natural: Option<&'a Polynomial>,
     /// Its order.
     pub(crate) order: &'a NetworkOrder,
     /// Each derived function that is known in closed form.
@@ -55,13 +58,18 @@ impl Evidence<'_> {
             Assertion::Pole(function, value) => self.root(*function, value, Side::Denominator)?,
             Assertion::Zero(function, value) => self.root(*function, value, Side::Numerator)?,
             Assertion::Cancels(function, classes) => self.cancels(*function, classes),
-            Assertion::Stable { .. } => (
-                Verdict::Undecided,
-                vec![note(
-                    "not available yet",
-                    "stability is not decided by this version",
-                )],
-            ),
+            Assertion::Stable {
+                subject,
+                within_tolerance,
+            } => {
+                let (holds, findings, relied_on) = self.stable(*subject, *within_tolerance)?;
+                return Ok(ClaimReport {
+                    claim: index,
+                    holds,
+                    findings,
+                    relied_on,
+                });
+            }
         };
         Ok(ClaimReport {
             claim: index,
@@ -298,6 +306,84 @@ impl Evidence<'_> {
             findings.push(self.formula(&format!("{word} there"), &at));
         }
         Ok((Verdict::No, findings))
+    }
+
+    /// The polynomial whose roots decide, or why there is none.
+    fn poles(&self, subject: Subject) -> Result<Polynomial, Decision> {
+        match subject {
+            Subject::Network => match self.natural {
+                Some(polynomial) => Ok(polynomial.clone()),
+                None => Err(not_known()),
+            },
+            Subject::Function(function) => {
+                let Some(known) = (self.function)(function) else {
+                    return Err(not_known());
+                };
+                let (numerator, denominator) = self
+                    .couplings
+                    .written(known.numerator(), known.denominator());
+                if numerator.degree(Symbol::S) > denominator.degree(Symbol::S) {
+                    let text = "it is improper: the numerator has the higher degree";
+                    return Err((Verdict::No, vec![note("found", text)]));
+                }
+                Ok(denominator)
+            }
+        }
+    }
+
+    fn stable(
+        &self,
+        subject: Subject,
+        within_tolerance: bool,
+    ) -> Result<(Verdict, Vec<Finding>, Vec<String>), Exceeded> {
+        let polynomial = match self.poles(subject) {
+            Ok(polynomial) => polynomial,
+            Err((verdict, findings)) => return Ok((verdict, findings, Vec::new())),
+        };
+        let narrowed;
+        let knowledge = if within_tolerance {
+            narrowed = self.knowledge.within_tolerance();
+            &narrowed
+        } else {
+            self.knowledge
+        };
+        let found = decide(&polynomial, knowledge, self.budget)?;
+        let names = self.network.symbols();
+        let mut findings = Vec::new();
+        if polynomial.valuation(Symbol::S) > 0 {
+            findings.push(note("found", "a pole at s = 0"));
+        }
+        for condition in &found.open {
+            findings.push(Finding {
+                label: "only where positive".to_owned(),
+                text: None,
+                formula: Some((condition.clone(), Polynomial::one())),
+            });
+        }
+        if !found.example.is_empty() {
+            let values: Vec<String> = found
+                .example
+                .iter()
+                .map(|(symbol, value)| format!("{} = {value}", names.name(*symbol)))
+                .collect();
+            findings.push(note("not stable at", values.join(", ")));
+        }
+        if subject == Subject::Network && found.verdict == Verdict::No {
+            let mut terminals = true;
+            for question in self.network.questions() {
+                let (verdict, ..) =
+                    self.stable(Subject::Function(question.symbol), within_tolerance)?;
+                terminals &= verdict == Verdict::Yes;
+            }
+            if terminals && !self.network.questions().is_empty() {
+                findings.push(note("warning", "stable at the terminals only"));
+            }
+        }
+        Ok((
+            found.verdict,
+            findings,
+            found.relied_on.into_iter().collect(),
+        ))
     }
 
     fn cancels(&self, function: Symbol, claimed: &[CancellationClass]) -> Decision {

@@ -1,6 +1,6 @@
 //! What the file states about signs: positive values, ranges, assumptions, couplings.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use crate::algebra::sign::{ProvenSign, SignFact, SignRules};
 use crate::algebra::{Fraction, Polynomial, Rational, Symbol};
@@ -8,12 +8,18 @@ use crate::analysis::relations::Substitution;
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Comparison, Network, Sign, Strength, Value};
 
+/// Symbols of a polynomial whose corners are all looked at.
+const MAX_CORNERS: usize = 14;
+
 /// Signs of expressions in the independent symbols of a network, under its relations.
 pub(crate) struct Knowledge<'a> {
     network: &'a Network,
     facts: Vec<Known>,
+    /// A box that holds all symbols, in tolerance work.
+    within: Option<BTreeMap<Symbol, (Rational, Rational)>>,
 }
 
+#[derive(Clone)]
 struct Known {
     fact: SignFact,
     text: String,
@@ -37,6 +43,7 @@ impl<'a> Knowledge<'a> {
         let mut knowledge = Self {
             network,
             facts: Vec::new(),
+            within: None,
         };
         knowledge.add_ranges(substitution, budget)?;
         knowledge.add_couplings(substitution, budget)?;
@@ -124,6 +131,72 @@ impl<'a> Knowledge<'a> {
         });
     }
 
+    /// The same with every symbol kept within the tolerance of its nominal.
+    pub(crate) fn within_tolerance(&self) -> Self {
+        let mut narrowed = Self {
+            network: self.network,
+            facts: self.facts.clone(),
+            within: None,
+        };
+        let mut within = BTreeMap::new();
+        for facts in self.network.all_facts() {
+            let Some(nominal) = &facts.nominal else {
+                continue;
+            };
+            if self.network.set_by(facts.symbol).is_some() {
+                continue;
+            }
+            let zero = Rational::zero();
+            let (up, down) = match &facts.tolerance {
+                Some(tolerance) => (&tolerance.up, &tolerance.down),
+                None => (&zero, &zero),
+            };
+            let size = nominal.abs();
+            let (low, high) = (nominal - &(&size * down), nominal + &(&size * up));
+            within.insert(facts.symbol, (low.clone(), high.clone()));
+            let value = Polynomial::symbol(facts.symbol);
+            let name = self.network.symbols().name(facts.symbol);
+            let text = format!("{name} within its tolerance");
+            for (bound, sign) in [(low, 1), (high, -1)] {
+                let above = Polynomial::constant(bound.numerator().clone());
+                let below = Polynomial::constant(bound.denominator().clone());
+                let difference = &(&value * &below) - &above;
+                narrowed.facts.push(Known {
+                    fact: SignFact {
+                        polynomial: difference.scale(&crate::algebra::Integer::from(sign)),
+                        strict: false,
+                    },
+                    text: text.clone(),
+                });
+            }
+        }
+        narrowed.within = Some(within);
+        narrowed
+    }
+
+    /// The sign over the box: a polynomial of degree one in each symbol has its extremes at the
+    /// corners; others are bounded term by term where all symbols are positive.
+    fn over_box(&self, polynomial: &Polynomial) -> Option<ProvenSign> {
+        let within = self.within.as_ref()?;
+        let symbols = polynomial.symbols();
+        if symbols.iter().any(|symbol| !within.contains_key(symbol)) {
+            return None;
+        }
+        let multi_affine = symbols.iter().all(|&symbol| polynomial.degree(symbol) <= 1);
+        let (low, high) = if multi_affine && symbols.len() <= MAX_CORNERS {
+            corners(polynomial, &symbols, within)?
+        } else {
+            term_bounds(polynomial, within)?
+        };
+        if low.signum() > 0 {
+            Some(ProvenSign::Positive)
+        } else if high.signum() < 0 {
+            Some(ProvenSign::Negative)
+        } else {
+            None
+        }
+    }
+
     /// Whether an independent symbol is stated to be positive.
     pub(crate) fn is_positive(&self, symbol: Symbol) -> bool {
         if symbol == Symbol::PI {
@@ -143,7 +216,11 @@ impl<'a> Knowledge<'a> {
             positive: &positive,
             facts: self.facts.iter().map(|known| known.fact.clone()).collect(),
         };
-        let (sign, used) = rules.sign(polynomial)?;
+        let Some((sign, used)) = rules.sign(polynomial) else {
+            let sign = self.over_box(polynomial)?;
+            let relied_on = BTreeSet::from(["the stated tolerances".to_owned()]);
+            return Some(Judgement { sign, relied_on });
+        };
         let mut relied_on: BTreeSet<String> = used
             .iter()
             .map(|&index| self.facts[index].text.clone())
@@ -224,4 +301,53 @@ impl<'a> Knowledge<'a> {
                 .recip()
                 .unwrap_or(Rational::from(1_i64))
     }
+}
+
+/// A closed interval for each symbol.
+type Intervals = BTreeMap<Symbol, (Rational, Rational)>;
+
+/// Least and largest value at the corners.
+fn corners(
+    polynomial: &Polynomial,
+    symbols: &[Symbol],
+    within: &Intervals,
+) -> Option<(Rational, Rational)> {
+    let mut bounds: Option<(Rational, Rational)> = None;
+    for corner in 0..1_usize << symbols.len() {
+        let value = |symbol: Symbol| {
+            let index = symbols.binary_search(&symbol).unwrap_or(0);
+            let (low, high) = &within[&symbol];
+            if corner >> index & 1 == 0 { low } else { high }.clone()
+        };
+        let found = polynomial.value(&value);
+        bounds = Some(match bounds {
+            None => (found.clone(), found),
+            Some((low, high)) => (low.min(found.clone()), high.max(found)),
+        });
+    }
+    bounds
+}
+
+/// Bounds term by term; `None` where a symbol may be negative.
+fn term_bounds(polynomial: &Polynomial, within: &Intervals) -> Option<(Rational, Rational)> {
+    let (mut low, mut high) = (Rational::zero(), Rational::zero());
+    for (monomial, coefficient) in polynomial.terms() {
+        let mut least = Rational::from(coefficient.clone());
+        let mut most = least.clone();
+        for (symbol, exponent) in monomial.factors() {
+            let (from, to) = &within[&symbol];
+            if from.signum() < 0 {
+                return None;
+            }
+            let power = i32::try_from(exponent).ok()?;
+            least = &least * &from.pow(power)?;
+            most = &most * &to.pow(power)?;
+        }
+        if coefficient.signum() < 0 {
+            std::mem::swap(&mut least, &mut most);
+        }
+        low = &low + &least;
+        high = &high + &most;
+    }
+    Some((low, high))
 }

@@ -27,6 +27,7 @@ pub mod report;
 pub mod setup;
 pub mod singular;
 mod solve;
+mod stability;
 mod symbolic;
 mod witness;
 

@@ -102,6 +102,19 @@ pub(crate) fn network_degrees(
     Ok(best.ok_or_else(|| explain(&[])))
 }
 
+/// The polynomial of the natural frequencies, relations put in, without factors that do not hold s.
+pub(crate) fn natural_polynomial(setting: &Setting<'_>) -> Result<Option<Polynomial>, Exceeded> {
+    let budget = setting.budget;
+    let Paired::Pairing(pairing) = Pairing::network(setting.network, &[], budget)? else {
+        return Ok(None);
+    };
+    let symbolic = Symbolic::new(setting.network, setting.rooted, setting.couplings, budget)?;
+    let ring = PolynomialRing { budget };
+    let (_, determinant) = pairing.expand(&ring, &symbolic)?;
+    let (written, _) = setting.couplings.written(&determinant, &Polynomial::one());
+    Ok(Some(written))
+}
+
 /// Builds the determinants of a question and decides its degrees; `None` for functions of functions.
 pub(crate) fn solve(
     setting: &Setting<'_>,

@@ -190,8 +190,15 @@ impl Lowering<'_> {
             }
             if let (Some(a), Some(b)) = (facts.dimension, linear.dimension)
                 && a != b
-                && !is_number(&relation.right)
             {
+                if is_number(&relation.right) {
+                    self.error(
+                        relation.right.place,
+                        format!("this unit does not fit {}", relation.left),
+                        format!("{} is {}", relation.left, unit_of(a)),
+                    );
+                    return;
+                }
                 self.warning(
                     relation.right.place,
                     format!("the dimension of this value does not fit {}", relation.left),
