@@ -5,6 +5,7 @@ use std::collections::BTreeMap;
 use crate::algebra::{Integer, Monomial, Polynomial, Rational, Symbol};
 use crate::analysis::report::Expanded;
 use crate::network::NetworkBuilder;
+use crate::render::factored::factored;
 use crate::render::math::{self, Math};
 use crate::render::names::{FrequencyPlace, Names};
 use crate::render::{coefficients, nest, parallel};
@@ -181,4 +182,34 @@ fn parallel_combinations_keep_their_value() {
         assert_eq!(value(&form, &values), expected, "round {round}: {form:?}");
     }
     assert!(found > 100, "{found}");
+}
+
+#[test]
+fn factored_forms_keep_their_value() {
+    let (builder, symbols, values) = bench();
+    let names = Names::new(builder.network(), FrequencyPlace::First);
+    let mut dice = Dice(4);
+    let mut found = 0;
+    for round in 0..60 {
+        let mut section = || {
+            let slope = &dice.sum(&symbols) * &Polynomial::symbol(Symbol::S);
+            &Polynomial::symbol(symbols[dice.roll(7) as usize]) + &slope
+        };
+        let above = section();
+        let below = &section() * &section();
+        let formula = Expanded {
+            numerator: above.coefficients(Symbol::S),
+            denominator: below.coefficients(Symbol::S),
+        };
+        let Some(form) = factored(&formula, &names) else {
+            continue;
+        };
+        found += 1;
+        let divisor = at(&below, &names, &values).recip();
+        if let Some(divisor) = divisor {
+            let expected = at(&above, &names, &values) * divisor;
+            assert_eq!(value(&form, &values), expected, "round {round}: {form:?}");
+        }
+    }
+    assert!(found > 30, "{found}");
 }

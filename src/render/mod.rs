@@ -7,6 +7,7 @@ pub mod answer;
 pub mod coefficients;
 #[cfg(test)]
 mod exactness;
+pub mod factored;
 pub mod json;
 pub mod latex;
 pub mod ledger;

@@ -3,6 +3,7 @@
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
 use crate::render::answer::Answer;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
+use crate::render::factored::factored;
 use crate::render::latex::escape::{escape, name};
 use crate::render::latex::spell::{LINE, lines, spell, width};
 use crate::render::math::{self, Bars, Math, Within};
@@ -30,10 +31,13 @@ fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
     let room = LINE - 60;
     if width(&above) <= room && width(&below) <= room {
         let right = spell(&Math::quotient(above, below));
-        if let Some(form) = standard(formula, names) {
-            return in_designers_terms(&left, &right, &form);
-        }
-        return format!("\\begin{{equation*}}\n  {left} = {right}\n\\end{{equation*}}\n");
+        return match factored(formula, names) {
+            Some(sections) if width(&sections) <= room => {
+                in_several_forms(&left, vec![right, spell(&sections)], None)
+            }
+            Some(_) => in_several_forms(&left, vec![right], None),
+            None => in_several_forms(&left, vec![right], standard(formula, names).as_ref()),
+        };
     }
     let definitions = [("N", above), ("D", below)].map(|(name, value)| Side {
         left: format!("{name}(s)"),
@@ -42,28 +46,33 @@ fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
     aligned(&format!("{left} &= \\frac{{N(s)}}{{D(s)}}"), &definitions)
 }
 
-/// The fraction, the same in gain, time constants and frequencies, and what these stand for.
-fn in_designers_terms(left: &str, right: &str, form: &StandardForm) -> String {
-    let gain = form.gain.as_ref().map(|gain| {
-        let group = gain.is_grouped(Within::Product, Bars::Drawn);
-        let (open, close) = if group { ("(", ")") } else { ("", "") };
-        format!("{open}{}{close} \\cdot ", spell(gain))
-    });
-    let fraction = spell(&form.fraction);
-    let sign = if form.negative { "-" } else { "" };
-    let first = format!(
-        "{left} &= {right} \\\\\n  &= {sign}{}{fraction}",
-        gain.unwrap_or_default()
-    );
-    let sides: Vec<Side> = form
-        .definitions
-        .iter()
+/// The fraction, the same in other forms, and what the names of the last one stand for.
+fn in_several_forms(left: &str, mut rights: Vec<String>, form: Option<&StandardForm>) -> String {
+    rights.extend(form.map(in_designers_terms));
+    if let [only] = rights.as_slice() {
+        return format!("\\begin{{equation*}}\n  {left} = {only}\n\\end{{equation*}}\n");
+    }
+    let first = format!("{left} &= {}", rights.join(" \\\\\n  &= "));
+    let definitions = form.iter().flat_map(|form| &form.definitions);
+    let sides: Vec<Side> = definitions
         .map(|(own, value)| Side {
             left: name(own),
             value: value.clone(),
         })
         .collect();
     aligned(&first, &sides)
+}
+
+/// Sign, gain and fraction.
+fn in_designers_terms(form: &StandardForm) -> String {
+    let sign = if form.negative { "-" } else { "" };
+    let gain = form.gain.as_ref().map(|gain| {
+        let group = gain.is_grouped(Within::Product, Bars::Drawn);
+        let (open, close) = if group { ("(", ")") } else { ("", "") };
+        format!("{open}{}{close} \\cdot ", spell(gain))
+    });
+    let fraction = spell(&form.fraction);
+    format!("{sign}{}{fraction}", gain.unwrap_or_default())
 }
 
 fn left_side(function: &str, formula: &Expanded) -> String {

@@ -4,6 +4,7 @@ use crate::algebra::{Polynomial, Symbol};
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
 use crate::render::answer::Answer;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
+use crate::render::factored::factored;
 use crate::render::ledger;
 use crate::render::limits::{self, Limit};
 use crate::render::linear::READING;
@@ -104,7 +105,10 @@ fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
         Block::fraction(&Block::lines(above), &Block::lines(below))
     };
     let mut text = Block::beside(&[Block::text(left.as_str()), right]).indented(INDENT);
-    if let Some(form) = standard(formula, names) {
+    if let Some(sections) = factored(formula, names) {
+        text.push('\n');
+        text.push_str(&in_sections(&sections, columns(&left), page));
+    } else if let Some(form) = standard(formula, names) {
         text.push('\n');
         text.push_str(&in_designers_terms(&form, columns(&left), page));
     }
@@ -133,6 +137,16 @@ fn frequency_limits(name: &str, formula: &Expanded, names: &Names<'_>, page: &Pa
         }
     }
     lines.iter().map(|line| format!("{line}\n")).collect()
+}
+
+/// The same as a product of independent sections; nothing where it is too wide.
+fn in_sections(sections: &Math, left: usize, page: &Page) -> String {
+    let equals = Block::text(format!("{}=  ", " ".repeat(left - 3)));
+    let block = Block::beside(&[equals, Block::math(sections)]);
+    if INDENT + block.width() > page.width {
+        return String::new();
+    }
+    block.indented(INDENT)
 }
 
 /// The same in gain, time constants, frequencies.
