@@ -449,21 +449,25 @@ impl Lowering<'_> {
         match TABLE[waiting.row].name {
             "opamp" => self.opamp(waiting, port("+", "-"), port("out", "ref")),
             "diffamp" => {
+                // The gain stands in one source only, so its states count once; the second output
+                // mirrors the first at cm.
                 let gain = self.required(waiting, "gain")?;
                 let half =
                     Rational::new(Integer::one(), Integer::from(2)).unwrap_or_else(Rational::one);
-                for (output, sign) in [("out+", half.clone()), ("out-", -half)] {
-                    let mut controls = vec![control(&gain, sign, port("+", "-"))];
-                    if node("cm") != NodeId::GROUND {
-                        controls.push(Control {
-                            gain: false,
-                            ..control(&Value::one(), Rational::one(), to_ground(node("cm")))
-                        });
-                    }
-                    self.main_part(
-                        waiting,
-                        source(Quantity::Voltage, to_ground(node(output)), controls),
-                    );
+                let fixed = |factor: Rational, sensed: NodeId| Control {
+                    gain: false,
+                    ..control(&Value::one(), factor, to_ground(sensed))
+                };
+                let (middle, first) = (node("cm"), node("out+"));
+                let mut controls = vec![control(&gain, half, port("+", "-"))];
+                let mut mirror = vec![fixed(-Rational::one(), first)];
+                if middle != NodeId::GROUND {
+                    controls.push(fixed(Rational::one(), middle));
+                    mirror.push(fixed(Rational::from(Integer::from(2)), middle));
+                }
+                for (output, controls) in [(first, controls), (node("out-"), mirror)] {
+                    let kind = source(Quantity::Voltage, to_ground(output), controls);
+                    self.main_part(waiting, kind);
                 }
                 Ok(())
             }
