@@ -37,6 +37,9 @@ pub fn answer(answer: &Answer<'_>, page: &Page) -> String {
         width: page.width.max(60),
         ..*page
     };
+    if answer.detail == Detail::Claims && answer.report.claims.is_empty() {
+        return String::new();
+    }
     let paint = Paint(page.colour);
     let mut sections = Vec::new();
     if let Some(title) = answer.network.title() {
