@@ -215,6 +215,38 @@ fn every_claim_made_wrong_is_refuted() {
 }
 
 #[test]
+fn stability_is_refuted_where_its_assumption_is_missing() {
+    let mut failures = Vec::new();
+    let mut refuted = 0;
+    for path in networks("tests/worked") {
+        let text = read(&path);
+        if !name(&path).starts_with("stability") || !text.contains("\nassume ") {
+            continue;
+        }
+        let lines = text.lines().map(|line| {
+            let assumed = line.starts_with("assume ");
+            if assumed { "" } else { line }
+        });
+        let text = lines.collect::<Vec<_>>().join("\n");
+        let answer = check_text(&text, &path).unwrap_or_else(|error| panic!("{error}"));
+        for claim in claims(&answer) {
+            let stability = claim["text"]
+                .as_str()
+                .is_some_and(|text| text.starts_with("stable"));
+            match (stability, &claim["holds"]) {
+                (true, Value::Bool(false)) => refuted += 1,
+                (true, other) => {
+                    failures.push(format!("{}: {}: {other}", name(&path), claim["text"]))
+                }
+                (false, _) => {}
+            }
+        }
+    }
+    report(&failures);
+    assert!(refuted >= 6, "only {refuted} claims");
+}
+
+#[test]
 fn every_worked_claim_names_its_source() {
     let mut failures = Vec::new();
     for path in networks("tests/worked") {
