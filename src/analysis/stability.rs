@@ -85,10 +85,10 @@ fn decide_factor(
         return Ok(stability);
     }
     let lead = coefficients[coefficients.len() - 1].clone();
-    if let Some((sign, _)) = sign_of(&lead, knowledge, budget)? {
-        if matches!(sign, ProvenSign::Negative | ProvenSign::NonPositive) {
-            coefficients = coefficients.iter().map(|part| -part).collect();
-        }
+    if let Some((sign, _)) = sign_of(&lead, knowledge, budget)?
+        && matches!(sign, ProvenSign::Negative | ProvenSign::NonPositive)
+    {
+        coefficients = coefficients.iter().map(|part| -part).collect();
     }
     for condition in conditions(&coefficients, budget)? {
         match sign_of(&condition, knowledge, budget)? {
@@ -152,10 +152,10 @@ fn sign_of(
     knowledge: &Knowledge<'_>,
     budget: &Budget,
 ) -> Result<Option<(ProvenSign, BTreeSet<String>)>, Exceeded> {
-    if let Some(judgement) = knowledge.judge(polynomial) {
-        if judgement.sign.is_never_zero() || judgement.sign == ProvenSign::Zero {
-            return Ok(Some((judgement.sign, judgement.relied_on)));
-        }
+    if let Some(judgement) = knowledge.judge(polynomial)
+        && (judgement.sign.is_never_zero() || judgement.sign == ProvenSign::Zero)
+    {
+        return Ok(Some((judgement.sign, judgement.relied_on)));
     }
     let factorisation = factor(polynomial, budget)?;
     let mut sign = if factorisation.unit.signum() < 0 {

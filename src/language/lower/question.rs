@@ -479,7 +479,7 @@ impl Lowering<'_> {
         };
         self.warning(
             place,
-            "initial values are read, but no command of this version uses them",
+            "initial values are not available yet",
             "they come with the state equations",
         );
         self.builder.start(Start {
