@@ -206,7 +206,7 @@ impl Polynomial {
         parts
     }
 
-    /// Σ coefficients[k] · symbol^k
+    /// Σ `coefficients[k]` · symbol^k
     #[must_use]
     pub fn from_coefficients(symbol: Symbol, coefficients: &[Self]) -> Self {
         Self::from_terms(coefficients.iter().enumerate().flat_map(|(power, part)| {
