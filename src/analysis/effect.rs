@@ -3,8 +3,8 @@
 use std::collections::BTreeSet;
 
 use crate::analysis::couplings::Couplings;
-use crate::analysis::equations::Residue;
 use crate::analysis::equations::point::Numbers;
+use crate::analysis::equations::{Residue, solve};
 use crate::analysis::report::{FunctionReport, NoEffect};
 use crate::analysis::witness;
 use crate::network::{Ask, ElementId, Kind, Network, Quantity, Value};
@@ -31,6 +31,16 @@ pub(crate) fn without_effect(
         .flat_map(|cancellation| &cancellation.parts)
         .collect();
     let seeds = [51_u64, 52];
+    if let Some(idle) = by_adjoint(network, question, &seeds, couplings) {
+        return idle
+            .into_iter()
+            .filter(|&id| !named.contains(&network.element(id).name))
+            .map(|element| NoEffect {
+                element,
+                reason: reason(network, element),
+            })
+            .collect();
+    }
     let base: Vec<Option<Residue>> = seeds
         .iter()
         .map(|&seed| {
@@ -61,6 +71,50 @@ pub(crate) fn without_effect(
         }
     }
     found
+}
+
+/// One solution and one adjoint solution tell all parts at once: a change of one value adds a matrix
+/// of rank one, and changes the response exactly when the adjoint at the part's row and the part's own
+/// current (R, L, Z) or voltage (C, Y) are both other than zero. `None` for questions of another form.
+fn by_adjoint(
+    network: &Network,
+    question: usize,
+    seeds: &[u64],
+    couplings: &Couplings,
+) -> Option<Vec<ElementId>> {
+    let asked = &network.questions()[question];
+    let mut active: BTreeSet<ElementId> = BTreeSet::new();
+    for &seed in seeds {
+        let numbers = Numbers::independent(network, couplings, seed, None);
+        let (equations, right, response) = witness::system(network, question, &numbers)?;
+        let solution = solve(&equations.rows, &[right]);
+        let adjoint = solve(&equations.transposed(), &[response]);
+        let (x, lambda) = (solution.solutions.first()?, adjoint.solutions.first()?);
+        for (id, element) in network.elements() {
+            let Some((row, voltage)) = equations.branch_of(id, x) else {
+                continue;
+            };
+            let own = match element.kind {
+                Kind::Resistor(..) | Kind::Inductor(..) | Kind::Impedance(..) => x[row],
+                Kind::Capacitor(..) | Kind::Conductance(..) | Kind::Admittance(..) => voltage,
+                _ => continue,
+            };
+            if !own.mul(lambda[row]).is_zero() {
+                active.insert(id);
+            }
+        }
+    }
+    Some(
+        network
+            .elements()
+            .filter(|(id, element)| {
+                matches!(element.value(), Some(Value::Symbol(_)))
+                    && !asked.without.contains(id)
+                    && !active.contains(id)
+            })
+            .map(|(id, _)| id)
+            .collect(),
+    )
 }
 
 /// Why a part has no effect, where the wiring shows it at once.

@@ -136,6 +136,50 @@ pub(crate) fn value(
     }
 }
 
+/// Equations, excitation and response of a transfer function, impedance or admittance.
+pub(crate) fn system<'a>(
+    network: &'a Network,
+    question: usize,
+    numbers: &Numbers<'_>,
+) -> Option<(Equations<'a>, Vec<Residue>, Vec<Residue>)> {
+    let asked = &network.questions()[question];
+    let mut shape = Shape {
+        without: asked.without.clone(),
+        ..Shape::default()
+    };
+    match &asked.ask {
+        Ask::Transfer { response, drive } => {
+            shape.ports = ports_of(response);
+            let equations = Equations::new(network, &shape, numbers);
+            let right = equations.drive(*drive, numbers);
+            let row = equations.response(response, &|fraction| numbers.value_of(fraction))?;
+            Some((equations, right, row))
+        }
+        Ask::Impedance(port) => {
+            shape.ports = vec![*port];
+            let equations = Equations::new(network, &shape, numbers);
+            let right = equations.current_into(*port);
+            // The same numbers read the voltage of the port.
+            let row = right.clone();
+            Some((equations, right, row))
+        }
+        Ask::Admittance(port) => {
+            shape.ports = vec![*port];
+            shape.probe_source = Some(*port);
+            let equations = Equations::new(network, &shape, numbers);
+            let (right, current) = equations.probe()?;
+            let mut row = vec![Residue::ZERO; right.len()];
+            row[current] = Residue::ONE;
+            Some((equations, right, row))
+        }
+        Ask::Ratio { .. }
+        | Ask::ReturnRatio(_)
+        | Ask::Function(_)
+        | Ask::Limit { .. }
+        | Ask::FirstOrder { .. } => None,
+    }
+}
+
 fn ports_of(combination: &crate::network::Combination) -> Vec<crate::network::Port> {
     combination
         .terms

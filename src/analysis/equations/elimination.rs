@@ -27,19 +27,21 @@ pub(crate) fn solve(rows: &Rows, rights: &[Vec<Residue>]) -> Solution {
             columns[column].insert(row);
         }
     }
-    let mut open: BTreeSet<usize> = (0..size).collect();
+    // Rows that wait, shortest first.
+    let mut waiting: BTreeSet<(usize, usize)> = rows
+        .iter()
+        .enumerate()
+        .map(|(row, entries)| (entries.len(), row))
+        .collect();
+    let mut open = vec![true; size];
     let mut pivots: Vec<(usize, usize)> = Vec::with_capacity(size);
     let mut determinant = Residue::ONE;
     let singular = Solution {
         determinant: Residue::ZERO,
         solutions: Vec::new(),
     };
-    while let Some(row) = open
-        .iter()
-        .copied()
-        .min_by_key(|&row| (rows[row].len(), row))
-    {
-        open.remove(&row);
+    while let Some((_, row)) = waiting.pop_first() {
+        open[row] = false;
         let column = rows[row]
             .keys()
             .copied()
@@ -60,13 +62,14 @@ pub(crate) fn solve(rows: &Rows, rights: &[Vec<Residue>]) -> Solution {
             .iter()
             .filter(|&&target| target != row)
         {
-            if !open.contains(&target) {
+            if !open[target] {
                 continue;
             }
             let Some(value) = rows[target].get(&column).copied() else {
                 continue;
             };
             let factor = value.mul(inverse);
+            waiting.remove(&(rows[target].len(), target));
             for (&at, &entry) in &entries {
                 let sum = rows[target]
                     .get(&at)
@@ -81,6 +84,7 @@ pub(crate) fn solve(rows: &Rows, rights: &[Vec<Residue>]) -> Solution {
                     columns[at].insert(target);
                 }
             }
+            waiting.insert((rows[target].len(), target));
             for (own, &other) in rights[target].iter_mut().zip(&right) {
                 *own = own.sub(factor.mul(other));
             }

@@ -310,6 +310,29 @@ impl<'a> Equations<'a> {
         self.source_rows.insert(id, (row, common));
     }
 
+    /// The transposed equations.
+    pub(crate) fn transposed(&self) -> Rows {
+        let mut rows: Rows = vec![BTreeMap::new(); self.rows.len()];
+        for (row, entries) in self.rows.iter().enumerate() {
+            for (&column, &value) in entries {
+                rows[column].insert(row, value);
+            }
+        }
+        rows
+    }
+
+    /// The number of a part's row and current, and its voltage in a solution.
+    pub(crate) fn branch_of(
+        &self,
+        id: ElementId,
+        solution: &[Residue],
+    ) -> Option<(usize, Residue)> {
+        let port = self.network.element(id).port()?;
+        let at =
+            |node: NodeId| Self::voltage_index(node).map_or(Residue::ZERO, |index| solution[index]);
+        Some((*self.current.get(&id)?, at(port.from).sub(at(port.to))))
+    }
+
     /// The right side for a drive of value 1.
     pub(crate) fn drive(&self, drive: DriveId, at: &dyn At) -> Vec<Residue> {
         let mut right = vec![Residue::ZERO; self.rows.len()];
