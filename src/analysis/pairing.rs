@@ -100,6 +100,10 @@ impl Pairing {
             Ask::Function(_) | Ask::Limit { .. } | Ask::FirstOrder { .. } => return Ok(None),
         };
         let (built, factor) = lower;
+        let reactive = reactive(network);
+        for determinant in built.iter().chain(&upper.plus).chain(&upper.minus) {
+            affordable(determinant, reactive, budget)?;
+        }
         Ok(Some(match built {
             Ok(determinant) => Paired::Pairing(Box::new(Self {
                 upper,
@@ -118,6 +122,9 @@ impl Pairing {
     ) -> Result<Paired, Exceeded> {
         let frame = Frame::without(without);
         let built = Determinant::build(network, &frame, &Insertion::None, budget)?;
+        if let Ok(determinant) = &built {
+            affordable(determinant, reactive(network), budget)?;
+        }
         Ok(match built {
             Ok(determinant) => Paired::Pairing(Box::new(Self {
                 upper: Side::of(None, Polynomial::one()),
@@ -211,6 +218,25 @@ impl Pairing {
         [&self.upper, &self.lower]
             .map(|side| (side.plus.as_ref(), side.minus.as_ref(), &side.factor))
     }
+}
+
+/// Multiplications one sweep over polynomials in s may take.
+const SWEEP: usize = 4_000_000_000;
+
+/// Sweeps take about one multiplication for each state and power of s.
+fn affordable(determinant: &Determinant, reactive: usize, budget: &Budget) -> Result<(), Exceeded> {
+    budget.time()?;
+    if determinant.states().saturating_mul(reactive + 1) > SWEEP {
+        return Err(Exceeded::States(SWEEP / (reactive + 1)));
+    }
+    Ok(())
+}
+
+fn reactive(network: &Network) -> usize {
+    network
+        .elements()
+        .filter(|(_, element)| element.is_reactive())
+        .count()
 }
 
 impl Side {
