@@ -12,10 +12,11 @@ use crate::analysis::couplings::Couplings;
 use crate::analysis::hidden::{Hidden, hides};
 use crate::analysis::line::{common_at, multiplicity_at};
 use crate::analysis::normal::with_positive_lead;
+use crate::analysis::order::ledger;
 use crate::analysis::point::{Choice, Quantity};
 use crate::analysis::relations::Substitution;
 use crate::analysis::report::{Cancellation, Hides};
-use crate::analysis::solve::{SEED, Setting, Solved, part_in_s};
+use crate::analysis::solve::{SEED, Setting, Solved, network_degrees, part_in_s};
 use crate::analysis::symbolic::Symbolic;
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Ask, CancellationClass, Network, Origin, RelationId};
@@ -351,8 +352,33 @@ impl Auditor<'_> {
             let mut entry = self.entry(CancellationClass::Structural, &found.factor, multiplicity);
             entry.hides = hides;
             entry.parts.clone_from(&parts);
+            if entry.factor == Polynomial::symbol(Symbol::S) {
+                entry.static_set = self.static_parts();
+            }
             entries.push(entry);
         }
+    }
+
+    /// Parts of the sets that keep a charge or flux in the network of the question.
+    fn static_parts(&self) -> Vec<String> {
+        let question = &self.network().questions()[self.question];
+        if !matches!(question.ask, Ask::Transfer { .. } | Ask::Impedance(_)) {
+            return Vec::new();
+        }
+        let degrees = network_degrees(self.network(), &question.without, self.setting.budget);
+        let Ok(Ok((degree, valuation))) = degrees else {
+            return Vec::new();
+        };
+        let ledger = ledger(self.network(), &question.without, degree, valuation);
+        let mut names: Vec<String> = ledger
+            .static_sets
+            .iter()
+            .flat_map(|set| &set.members)
+            .map(|&id| self.network().element(id).name.clone())
+            .collect();
+        names.sort_unstable();
+        names.dedup();
+        names
     }
 
     // ---- matched --------------------------------------------------------------------------------
