@@ -1,6 +1,7 @@
 //! Why factors of numerator and denominator cancel: by structure, by matching, or by the nominals.
 
 use std::collections::{BTreeMap, BTreeSet};
+use std::time::Duration;
 
 use crate::algebra::factor::factor;
 use crate::algebra::gcd::gcd;
@@ -18,8 +19,14 @@ use crate::analysis::relations::Substitution;
 use crate::analysis::report::{Cancellation, Hides};
 use crate::analysis::solve::{SEED, Setting, Solved, network_degrees, part_in_s};
 use crate::analysis::symbolic::Symbolic;
-use crate::budget::{Budget, Exceeded};
+use crate::budget::{Budget, Exceeded, Limits};
 use crate::network::{Ask, CancellationClass, Network, Origin, RelationId};
+
+/// Terms and time for the factors that hold a coincidence.
+const FACTORING: (usize, Duration) = (20_000, Duration::from_secs(2));
+
+/// Terms and time for one condition.
+const STATED: (usize, Duration) = (5_000, Duration::from_millis(500));
 
 /// All cancellations of one question.
 pub(crate) struct Audit {
@@ -500,8 +507,7 @@ impl Auditor<'_> {
             return Ok(Vec::new());
         }
         for (nominal_factor, multiplicity) in factors_in_s(&common, budget)? {
-            let (factor, conditions) =
-                self.coincidence(&numerator, &denominator, &nominal_factor)?;
+            let (factor, conditions) = self.coincidence(&numerator, &denominator, &nominal_factor);
             let mut entry = self.entry(CancellationClass::Coincidental, &factor, multiplicity);
             entry.degree = nominal_factor.degree(Symbol::S);
             entry.conditions = conditions;
@@ -511,41 +517,29 @@ impl Auditor<'_> {
     }
 
     /// The symbolic factor of the denominator that holds the common root, and the conditions that
-    /// happen to be met.
+    /// happen to be met. That something cancels needs no condition: where one would be too long to
+    /// state, it is left out, and the common factor itself is shown where no symbolic one is found.
     fn coincidence(
         &self,
         numerator: &Polynomial,
         denominator: &Polynomial,
         common: &Polynomial,
-    ) -> Result<(Polynomial, Vec<Polynomial>), Exceeded> {
-        let budget = self.setting.budget;
-        let holds = |factor: &Polynomial| -> Result<bool, Exceeded> {
-            let value = factor.evaluate(&|symbol| self.nominal(symbol)).0;
-            Ok(gcd(&value, common, budget)?.degree(Symbol::S) > 0)
-        };
-        let mut above = Vec::new();
-        for (part, _) in factors_in_s(numerator, budget)? {
-            if holds(&part)? {
-                above.push(part);
-            }
-        }
-        let mut below = Vec::new();
-        for (part, _) in factors_in_s(denominator, budget)? {
-            if holds(&part)? {
-                below.push(part);
-            }
-        }
+    ) -> (Polynomial, Vec<Polynomial>) {
+        let budget = sparing(self.setting.budget, FACTORING);
+        let above = self.holding(numerator, common, &budget).unwrap_or_default();
+        let below = self
+            .holding(denominator, common, &budget)
+            .unwrap_or_default();
+        let mut pairs: Vec<(&Polynomial, &Polynomial)> = above
+            .iter()
+            .flat_map(|upper| below.iter().map(move |lower| (upper, lower)))
+            .collect();
+        pairs.sort_by_key(|(upper, lower)| upper.degree(Symbol::S) + lower.degree(Symbol::S));
         let mut conditions: Vec<Polynomial> = Vec::new();
-        for upper in &above {
-            for lower in &below {
-                let resultant =
-                    crate::algebra::resultant::resultant(upper, lower, Symbol::S, budget)?;
-                for (part, _) in factor(&resultant, budget)?.factors {
-                    let value = part.evaluate(&|symbol| self.nominal(symbol)).0;
-                    let part = with_positive_lead(&part, self.names);
-                    if value.is_zero() && !conditions.contains(&part) {
-                        conditions.push(part);
-                    }
+        for (upper, lower) in pairs {
+            for condition in self.condition(upper, lower).unwrap_or_default() {
+                if !conditions.contains(&condition) {
+                    conditions.push(condition);
                 }
             }
         }
@@ -553,7 +547,41 @@ impl Auditor<'_> {
             .iter()
             .find(|part| part.degree(Symbol::S) == common.degree(Symbol::S));
         let shown = whole.unwrap_or(common).clone();
-        Ok((shown, conditions))
+        (shown, conditions)
+    }
+
+    /// The factors that share a root with the common factor at the nominals.
+    fn holding(
+        &self,
+        polynomial: &Polynomial,
+        common: &Polynomial,
+        budget: &Budget,
+    ) -> Result<Vec<Polynomial>, Exceeded> {
+        let mut holding = Vec::new();
+        for (part, _) in factors_in_s(polynomial, budget)? {
+            let value = part.evaluate(&|symbol| self.nominal(symbol)).0;
+            if gcd(&value, common, budget)?.degree(Symbol::S) > 0 {
+                holding.push(part);
+            }
+        }
+        Ok(holding)
+    }
+
+    /// What has to vanish for two factors to share a root, and vanishes at the nominals.
+    fn condition(
+        &self,
+        upper: &Polynomial,
+        lower: &Polynomial,
+    ) -> Result<Vec<Polynomial>, Exceeded> {
+        let budget = &sparing(self.setting.budget, STATED);
+        let resultant = crate::algebra::resultant::resultant(upper, lower, Symbol::S, budget)?;
+        let parts = factor(&resultant, budget)?.factors;
+        let met = |part: &Polynomial| part.evaluate(&|symbol| self.nominal(symbol)).0.is_zero();
+        Ok(parts
+            .iter()
+            .filter(|(part, _)| met(part))
+            .map(|(part, _)| with_positive_lead(part, self.names))
+            .collect())
     }
 
     fn nominal(&self, symbol: Symbol) -> Option<Rational> {
@@ -603,6 +631,16 @@ impl Auditor<'_> {
             Hidden::Unknown => vec![(multiplicity, None)],
         }
     }
+}
+
+/// A smaller budget for what an answer can do without, within the time of the whole.
+fn sparing(budget: &Budget, (terms, time): (usize, Duration)) -> Budget {
+    let limits = budget.limits();
+    Budget::new(Limits {
+        terms: limits.terms.min(terms),
+        time: limits.time.min(time),
+        ..limits
+    })
 }
 
 /// What cancels as one product, where its factors were not found within the budget; `None` where not

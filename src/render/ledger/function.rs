@@ -140,6 +140,9 @@ fn coincidental(answer: &Answer<'_>, it: &Cancellation) -> Vec<Evidence> {
         let (left, right) = math::equation(condition, &names);
         Evidence::Equation("where".to_owned(), left, right)
     }));
+    if it.conditions.is_empty() {
+        evidence.push(Evidence::clause("its condition is too long to state"));
+    }
     evidence
 }
 
