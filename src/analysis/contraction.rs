@@ -253,3 +253,42 @@ fn take(
     }
     Ok(())
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::analysis::assembly::assemble;
+    use crate::analysis::setup::{Frame, Insertion};
+    use crate::network::sketch::Sketch;
+
+    #[test]
+    fn a_loop_of_sources_names_its_parts() {
+        let network = Sketch::of("Va a ground; Vb b a; Vc b ground; R1 b ground").finish();
+        let mut assembly = assemble(&network, &Frame::default(), &Insertion::None);
+        let singular = contract(&mut assembly).expect_err("a loop");
+        let names: Vec<&str> = singular
+            .elements
+            .iter()
+            .map(|&id| network.element(id).name.as_str())
+            .collect();
+        assert_eq!(names, ["Va", "Vb", "Vc"]);
+    }
+
+    #[test]
+    fn parts_across_a_source_lose_the_option_that_became_a_loop() {
+        let network = Sketch::of("Va a ground; R1 a ground; R2 a b; R3 b ground").finish();
+        let mut assembly = assemble(&network, &Frame::default(), &Insertion::None);
+        contract(&mut assembly).expect("sound");
+        let across = assembly
+            .blocks
+            .iter()
+            .find(|block| {
+                block
+                    .element
+                    .is_some_and(|id| network.element(id).name == "R1")
+            })
+            .expect("it stays as a factor");
+        assert_eq!(across.choices.len(), 1);
+        assert!(across.choices[0].current.is_empty());
+    }
+}

@@ -289,3 +289,25 @@ pub(crate) fn square_root(square: &Polynomial) -> Option<Polynomial> {
     }
     Some(root)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn squares_have_roots_and_others_none() {
+        let mut table = SymbolTable::new();
+        let a = Polynomial::symbol(table.intern("a"));
+        let b = Polynomial::symbol(table.intern("b"));
+        let root = &(&a - &b.scale(&Integer::from(3))) + &Polynomial::one();
+        let found = square_root(&(&root * &root)).expect("a square");
+        assert!(found == root || found == -root);
+        assert!(square_root(&(&a * &b)).is_none());
+        assert!(square_root(&(&(&a * &a) + &b)).is_none());
+        assert!(square_root(&Polynomial::constant(2)).is_none());
+        assert_eq!(
+            square_root(&Polynomial::constant(9)),
+            Some(Polynomial::constant(3))
+        );
+    }
+}

@@ -211,3 +211,192 @@ fn is_one(weight: &Weight) -> bool {
             .iter()
             .all(|atom| !matches!(atom, Atom::S | Atom::Above(_) | Atom::Below(_)))
 }
+
+#[cfg(test)]
+mod tests {
+    use std::convert::Infallible;
+
+    use super::*;
+    use crate::algebra::{PolynomialRing, PrimeField};
+    use crate::diagnostic::Diagnostic;
+    use crate::network::check;
+    use crate::network::oracle::{degrees, value_of};
+    use crate::network::scatter::{Dice, active};
+    use crate::network::sketch::Sketch;
+
+    /// Every symbol stands for itself.
+    struct Plain;
+
+    impl Values<PolynomialRing<'_>> for Plain {
+        fn symbol(&self, symbol: Symbol) -> Result<(Polynomial, Polynomial), Exceeded> {
+            Ok((Polynomial::symbol(symbol), Polynomial::one()))
+        }
+
+        fn mutual(&self, _: usize) -> Result<(Polynomial, Polynomial), Exceeded> {
+            Ok((Polynomial::zero(), Polynomial::one()))
+        }
+
+        fn s(&self) -> Polynomial {
+            Polynomial::symbol(Symbol::S)
+        }
+
+        fn polynomial(
+            &self,
+            polynomial: &Polynomial,
+        ) -> Result<(Polynomial, Polynomial), Exceeded> {
+            Ok((polynomial.clone(), Polynomial::one()))
+        }
+    }
+
+    /// Numbers modulo a prime, by name.
+    struct Numbers<'a>(&'a Network);
+
+    impl Values<PrimeField> for Numbers<'_> {
+        fn symbol(&self, symbol: Symbol) -> Result<(u64, u64), Infallible> {
+            Ok((value_of(self.0.symbols().name(symbol), 7) % (1 << 60), 1))
+        }
+
+        fn mutual(&self, _: usize) -> Result<(u64, u64), Infallible> {
+            Ok((0, 1))
+        }
+
+        fn s(&self) -> u64 {
+            12_345
+        }
+
+        fn polynomial(&self, _: &Polynomial) -> Result<(u64, u64), Infallible> {
+            Ok((1, 1))
+        }
+    }
+
+    fn determinant(network: &Network) -> Determinant {
+        Determinant::build(
+            network,
+            &Frame::default(),
+            &Insertion::None,
+            &Budget::unlimited(),
+        )
+        .expect("no budget")
+        .expect("a tree")
+    }
+
+    #[test]
+    fn complete_graphs_have_as_many_trees_as_cayley_says() {
+        // source: Cayley's formula n^(n−2) for the number of spanning trees of a complete graph
+        for nodes in 2..7_usize {
+            let mut parts = String::new();
+            for a in 0..nodes {
+                for b in a + 1..nodes {
+                    let from = if a == 0 {
+                        "ground".to_owned()
+                    } else {
+                        format!("n{a}")
+                    };
+                    parts.push_str(&format!("R{a}x{b} {from} n{b};"));
+                }
+            }
+            let network = Sketch::of(&parts).finish();
+            let exponent = u32::try_from(nodes - 2).expect("small");
+            let expected = Integer::from(nodes).pow(exponent);
+            assert_eq!(
+                determinant(&network).term_count(),
+                expected,
+                "{nodes} nodes"
+            );
+        }
+    }
+
+    #[test]
+    fn ladders_count_by_fibonacci_numbers() {
+        // n sections of a series and a shunt part: trees of the fan, the Fibonacci number F(2n).
+        let mut parts = String::new();
+        let (mut before, mut last) = (0_u64, 1_u64);
+        for section in 1..12 {
+            let from = if section == 1 {
+                "ground".to_owned()
+            } else {
+                format!("n{}", section - 1)
+            };
+            parts.push_str(&format!(
+                "R{section} {from} n{section}; C{section} n{section} ground;"
+            ));
+            (before, last) = (before + last, before + 2 * last);
+            let count = determinant(&Sketch::of(&parts).finish()).term_count();
+            assert_eq!(count, Integer::from(last), "{section} sections");
+        }
+    }
+
+    #[test]
+    fn a_divider_is_written_as_it_should_be() {
+        let network = Sketch::of("Vs in ground; R1 in out; C1 out ground").finish();
+        let budget = Budget::unlimited();
+        let ring = PolynomialRing { budget: &budget };
+        let value = determinant(&network)
+            .value(&ring, &Plain)
+            .expect("no budget");
+        let find = |name: &str| Polynomial::symbol(network.symbols().find(name).expect("known"));
+        let (r, c, s) = (find("R1"), find("C1"), Polynomial::symbol(Symbol::S));
+        let expected = &Polynomial::one() + &(&(&r * &c) * &s);
+        assert!(value == expected || value == -expected);
+    }
+
+    #[test]
+    fn nested_definitions_expand_to_the_determinant() {
+        let mut parts = String::from("Vs n0 ground;");
+        for section in 1..6 {
+            let before = section - 1;
+            parts.push_str(&format!(
+                "R{section} n{before} n{section}; C{section} n{section} ground;"
+            ));
+        }
+        let network = Sketch::of(&parts).finish();
+        let budget = Budget::unlimited();
+        let ring = PolynomialRing { budget: &budget };
+        let built = determinant(&network);
+        let mut table = network.symbols().clone();
+        let mut definitions = Vec::new();
+        let mut value = built
+            .nested(&ring, &Plain, &mut table, &mut definitions)
+            .expect("no budget");
+        for (symbol, definition) in definitions.iter().rev() {
+            value = value.substitute(*symbol, definition);
+        }
+        assert_eq!(value, built.value(&ring, &Plain).expect("no budget"));
+    }
+
+    #[test]
+    fn random_active_networks_vanish_where_the_equations_do() {
+        let mut dice = Dice(41);
+        let (mut solvable, mut singular) = (0, 0);
+        for round in 0..400 {
+            let network = active(&mut dice).finish();
+            let expected = degrees(&network, &[], 7).is_some();
+            let built = Determinant::build(
+                &network,
+                &Frame::default(),
+                &Insertion::None,
+                &Budget::unlimited(),
+            )
+            .expect("no budget");
+            let found = built.is_ok_and(|determinant| {
+                let field = PrimeField::default_prime();
+                match determinant.value(&field, &Numbers(&network)) {
+                    Ok(value) => value != 0,
+                    Err(never) => match never {},
+                }
+            });
+            // Relations and couplings by factor are not what `Numbers` knows of.
+            if network.relations().len() == 0 && network.couplings().is_empty() {
+                // Islands float freely in a determinant; the wiring check refuses them.
+                let floats = found && check::check(&network).iter().any(Diagnostic::is_error);
+                assert!(found == expected || floats, "round {round}");
+            }
+            if found {
+                solvable += 1;
+            } else {
+                singular += 1;
+            }
+        }
+        assert!(solvable > 50 && singular > 5, "{solvable} {singular}");
+    }
+}

@@ -351,3 +351,25 @@ fn term_bounds(polynomial: &Polynomial, within: &Intervals) -> Option<(Rational,
     }
     Some((low, high))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::network::sketch::Sketch;
+
+    #[test]
+    fn real_symbols_decide_by_squares_alone() {
+        let network = Sketch::of("R1 a ground; R2 a ground").finish();
+        let substitution = Substitution::default();
+        let budget = Budget::unlimited();
+        let knowledge = Knowledge::new(&network, &substitution, &budget).expect("no budget");
+        let find = |name: &str| Polynomial::symbol(network.symbols().find(name).expect("known"));
+        let (a, b) = (find("R1"), find("R2"));
+        let squares = &(&(&a * &a) + &(&b * &b)) + &Polynomial::one();
+        let found = knowledge.judge(&squares).expect("decided");
+        assert_eq!(found.sign, ProvenSign::Positive);
+        assert!(knowledge.judge(&(&a - &b)).is_none());
+        let zero = knowledge.zero_of(&(&a - &b)).expect("equal values");
+        assert_eq!(zero[0].1, zero[1].1);
+    }
+}

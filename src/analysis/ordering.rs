@@ -169,3 +169,39 @@ fn improve(incidence: &Incidence, order: &mut Vec<usize>, cost: &mut u64) {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::analysis::assembly::assemble;
+    use crate::analysis::setup::{Frame, Insertion};
+    use crate::network::sketch::Sketch;
+
+    #[test]
+    fn a_ladder_keeps_a_narrow_frontier_whatever_the_file_order() {
+        let mut list: Vec<String> = (1..40)
+            .flat_map(|n| {
+                let before = if n == 1 {
+                    "ground".to_owned()
+                } else {
+                    format!("n{}", n - 1)
+                };
+                [format!("R{n} {before} n{n}"), format!("C{n} n{n} ground")]
+            })
+            .collect();
+        let half = list.len() / 2;
+        let scattered: Vec<String> = (0..half)
+            .flat_map(|at| [list[at].clone(), list[at + half].clone()])
+            .collect();
+        list.clone_from(&scattered);
+        let network = Sketch::of(&list.join(";")).finish();
+        let assembly = assemble(&network, &Frame::default(), &Insertion::None);
+        let incidence = Incidence::new(&assembly.blocks, assembly.nodes);
+        let found = order(&assembly.blocks, assembly.nodes);
+        let mut sorted = found.clone();
+        sorted.sort_unstable();
+        assert_eq!(sorted, (0..assembly.blocks.len()).collect::<Vec<_>>());
+        // Two vertices of each graph at a time, ends apart.
+        assert!(incidence.cost(&found) <= 16 * assembly.blocks.len() as u64 + 64);
+    }
+}

@@ -245,3 +245,42 @@ fn essential(
     }
     Ok(list)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::algebra::SymbolTable;
+
+    /// Σ c·s^k
+    fn polynomial(coefficients: &[i64]) -> Vec<Polynomial> {
+        coefficients
+            .iter()
+            .map(|&c| Polynomial::constant(c))
+            .collect()
+    }
+
+    #[test]
+    fn hurwitz_determinants_of_a_quartic() {
+        // source: Hurwitz 1895; for a4 … a0 = 1, 10, 35, 50, 24 = (s+1)(s+2)(s+3)(s+4)
+        let coefficients = polynomial(&[24, 50, 35, 10, 1]);
+        let budget = Budget::unlimited();
+        let second = hurwitz(&coefficients, 2, &budget).expect("ok");
+        assert_eq!(second, Polynomial::constant(10 * 35 - 50));
+        let third = hurwitz(&coefficients, 3, &budget).expect("ok");
+        assert_eq!(
+            third,
+            Polynomial::constant(50 * (10 * 35 - 50) - 10 * 10 * 24)
+        );
+    }
+
+    #[test]
+    fn a_cubic_needs_one_condition_beside_its_signs() {
+        let mut table = SymbolTable::new();
+        let [a, b, c] = ["a", "b", "c"].map(|name| Polynomial::symbol(table.intern(name)));
+        // s³ + a·s² + b·s + c: a·b − c > 0
+        let coefficients = vec![c.clone(), b.clone(), a.clone(), Polynomial::one()];
+        let list = conditions(&coefficients, &Budget::unlimited()).expect("ok");
+        assert!(list.contains(&(&(&a * &b) - &c)));
+        assert_eq!(list.len(), 5);
+    }
+}
