@@ -89,12 +89,12 @@ pub(crate) fn network_degrees(
         }))
     };
     // Passive networks with independent values need no determinant.
-    if without.is_empty() && network.relations().len() == 0 {
-        if let Some(passive) = passive_order(network) {
-            if network.node_count() > LARGE {
-                return Ok(Ok((passive.order, passive.static_modes)));
-            }
-        }
+    if without.is_empty()
+        && network.relations().len() == 0
+        && let Some(passive) = passive_order(network)
+        && network.node_count() > LARGE
+    {
+        return Ok(Ok((passive.order, passive.static_modes)));
     }
     let pairing = match Pairing::network(network, without, budget)? {
         Paired::Pairing(pairing) => pairing,
