@@ -275,7 +275,7 @@ impl<'a> Expander<'a> {
                     );
                     return;
                 }
-                match fill(kind, names) {
+                match fill::fill(kind, names) {
                     Ok(StatementKind::Is {
                         names: instances,
                         kind,
