@@ -14,6 +14,9 @@ use crate::algebra::rational::Rational;
 use crate::algebra::symbol::Symbol;
 use crate::budget::{Budget, Exceeded};
 
+/// Products of terms below which the clock is not looked at.
+const SMALL_PRODUCT: usize = 1024;
+
 /// A polynomial with integer coefficients.
 #[derive(Clone, Debug, Default, PartialEq, Eq, Hash)]
 pub struct Polynomial {
@@ -316,16 +319,14 @@ impl Polynomial {
     /// When the product has more terms than allowed.
     pub fn product(&self, other: &Self, budget: &Budget) -> Result<Self, Exceeded> {
         let work = self.len().saturating_mul(other.len());
-        if work > 1 << 16 {
-            budget.time()?;
-        }
-        if self.len() == 1 || other.len() == 1 || work <= budget.limits().terms {
+        if self.len() == 1 || other.len() == 1 || work <= SMALL_PRODUCT {
             let product = self * other;
             budget.terms(product.len())?;
             return Ok(product);
         }
         let mut sums: FxHashMap<Monomial, Integer> = FxHashMap::default();
         for (a, x) in &self.terms {
+            budget.time()?;
             for (b, y) in &other.terms {
                 *sums.entry(a.mul(b)).or_default() += x * y;
             }

@@ -331,6 +331,16 @@ impl<'a> Expander<'a> {
             return;
         }
         let text = plain(name);
+        let mut trial = names.clone();
+        let each = estimate(body, &mut trial, &text, (from, to));
+        if rounds > 0 && each.saturating_mul(rounds.unsigned_abs()) > MAX_STATEMENTS as u128 {
+            self.over = true;
+            self.errors.push(
+                Diagnostic::error(place, "more than 10 000 000 parts after repetition")
+                    .help("lower the number of repetitions"),
+            );
+            return;
+        }
         let before = names.get(&text).copied();
         inside.push(String::from("for"));
         for value in from..=to {
@@ -513,6 +523,35 @@ impl<'a> Expander<'a> {
             made.parameters.insert(name, given);
         }
     }
+}
+
+/// Statements of one round of a repetition: the mean of its first and its last round.
+fn estimate(body: &[Statement], names: &mut Names, counter: &str, ends: (i64, i64)) -> u128 {
+    let mut sum = 0_u128;
+    for value in [ends.0, ends.1] {
+        names.insert(counter.to_owned(), value);
+        for statement in body {
+            let StatementKind::For {
+                name,
+                from,
+                to,
+                body,
+            } = &statement.kind
+            else {
+                sum = sum.saturating_add(1);
+                continue;
+            };
+            let (Ok(from), Ok(to)) = (whole(from, names), whole(to, names)) else {
+                continue;
+            };
+            let rounds = i128::from(to) - i128::from(from) + 1;
+            if rounds > 0 {
+                let each = estimate(body, &mut names.clone(), &plain(name), (from, to));
+                sum = sum.saturating_add(each.saturating_mul(rounds.unsigned_abs()));
+            }
+        }
+    }
+    sum / 2
 }
 
 /// The text of a name without braces.

@@ -11,7 +11,7 @@ use std::collections::{BTreeMap, BTreeSet};
 use std::rc::Rc;
 
 use crate::algebra::Symbol;
-use crate::budget::Budget;
+use crate::budget::{Budget, Limits};
 use crate::diagnostic::Diagnostic;
 use crate::language::expand::{Flat, Scope, plain};
 use crate::language::nearest::nearest;
@@ -100,6 +100,9 @@ pub(crate) struct Lowering<'a> {
     pub(crate) drive_ids: BTreeMap<String, DriveId>,
 }
 
+/// Terms one expression of a file may have when it is multiplied out.
+const MAX_TERMS: usize = 20_000;
+
 /// Lowers a flat list of statements.
 pub(crate) fn lower(
     sources: &Sources,
@@ -113,7 +116,10 @@ pub(crate) fn lower(
     let mut lowering = Lowering {
         sources,
         builder: NetworkBuilder::new(start),
-        budget: Budget::default(),
+        budget: Budget::new(Limits {
+            terms: MAX_TERMS,
+            ..Limits::default()
+        }),
         messages: Vec::new(),
         names: BTreeMap::new(),
         node_index: BTreeMap::new(),
