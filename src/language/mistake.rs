@@ -56,7 +56,9 @@ pub(crate) fn before(text: &str, form: Form) -> Option<Mistake> {
         {
             let start = text[..at]
                 .rfind(|c: char| !c.is_ascii_digit())
-                .map_or(0, |found| found + 1);
+                .map_or(0, |found| {
+                    found + text[found..].chars().next().map_or(1, char::len_utf8)
+                });
             let end = text[at + 1..]
                 .find(|c: char| !c.is_ascii_digit())
                 .map_or(text.len(), |found| at + 1 + found);
