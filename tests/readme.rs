@@ -1,0 +1,39 @@
+//! What the README shows is what the tool answers.
+
+use std::process::Command;
+
+fn answer(arguments: &[&str]) -> String {
+    let output = Command::new(env!("CARGO_BIN_EXE_cutloop"))
+        .args(arguments)
+        .current_dir(env!("CARGO_MANIFEST_DIR"))
+        .output()
+        .expect("the command runs");
+    String::from_utf8(output.stdout).expect("UTF-8")
+}
+
+#[test]
+fn shows_true_answers() {
+    let readme = include_str!("../README.md");
+    let refuted = "in -Vs- ground; in -R1- out -C1- ground; derive H = voltage(out)/Vs; claim H = 1/(1 - s*R1*C1)";
+    for arguments in [
+        &["formula", "--of", "H", "examples/antialias_filter.cutloop"][..],
+        &["order", "--of", "H", "examples/half_supply.cutloop"],
+        &["audit", "--of", "H", "examples/monitored_sensor.cutloop"],
+        &["audit", "--of", "H", "examples/probe_divider.cutloop"],
+        &["audit", "--of", "H", "examples/lucky_equaliser.cutloop"],
+        &["check", "-e", refuted],
+    ] {
+        let found = answer(arguments);
+        assert!(
+            readme.contains(found.trim_end()),
+            "{arguments:?} answers\n{found}"
+        );
+    }
+}
+
+#[test]
+fn shows_the_example_it_runs() {
+    let readme = include_str!("../README.md");
+    assert!(readme.contains(include_str!("../examples/antialias_filter.cutloop").trim()));
+    assert!(readme.contains("cargo run --release -- formula examples/antialias_filter.cutloop"));
+}
