@@ -171,7 +171,11 @@ impl Integer {
         {
             return (Self(Small(quotient)), Self(Small(rest)));
         }
-        let (quotient, rest) = self.to_bigint().div_rem(&other.to_bigint());
+        let (quotient, rest) = match (&self.0, &other.0) {
+            (Big(a), Big(b)) => a.div_rem(b),
+            (Big(a), Small(b)) => (&**a / *b, &**a % *b),
+            (Small(_), _) => self.to_bigint().div_rem(&other.to_bigint()),
+        };
         (Self::from_big(quotient), Self::from_big(rest))
     }
 
@@ -272,6 +276,12 @@ impl From<u64> for Integer {
     }
 }
 
+impl From<i128> for Integer {
+    fn from(value: i128) -> Self {
+        Self::from_wide(value)
+    }
+}
+
 impl From<usize> for Integer {
     fn from(value: usize) -> Self {
         Self::from(value as u64)
@@ -365,7 +375,12 @@ macro_rules! operator {
                     let wide: fn(i128, i128) -> i128 = $wide;
                     return Integer::from_wide(wide(i128::from(*a), i128::from(*b)));
                 }
-                Integer::from_big($trait::$method(self.to_bigint(), other.to_bigint()))
+                Integer::from_big(match (&self.0, &other.0) {
+                    (Big(a), Big(b)) => $trait::$method(&**a, &**b),
+                    (Big(a), Small(b)) => $trait::$method(&**a, *b),
+                    (Small(a), Big(b)) => $trait::$method(*a, &**b),
+                    (Small(a), Small(b)) => $trait::$method(BigInt::from(*a), *b),
+                })
             }
         }
 

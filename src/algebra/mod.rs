@@ -7,7 +7,10 @@ pub mod factor;
 pub mod fraction;
 pub mod gcd;
 pub mod integer;
+#[cfg(test)]
+mod laws;
 pub mod monomial;
+mod packed;
 pub mod polynomial;
 pub mod prime_field;
 pub mod rational;

@@ -35,6 +35,11 @@ impl Monomial {
         Self(factors)
     }
 
+    /// From factors sorted by symbol; zeroth powers are left out.
+    pub(super) fn from_sorted(factors: impl Iterator<Item = (Symbol, u32)>) -> Self {
+        Self(factors.filter(|&(_, exponent)| exponent > 0).collect())
+    }
+
     /// = 1
     #[must_use]
     pub fn is_one(&self) -> bool {

@@ -9,6 +9,7 @@ use rustc_hash::FxHashMap;
 
 use crate::algebra::integer::Integer;
 use crate::algebra::monomial::Monomial;
+use crate::algebra::packed::{self, Division};
 use crate::algebra::prime_field::PrimeField;
 use crate::algebra::rational::Rational;
 use crate::algebra::symbol::Symbol;
@@ -324,6 +325,10 @@ impl Polynomial {
             budget.terms(product.len())?;
             return Ok(product);
         }
+        budget.time()?;
+        if let Some(terms) = packed::product(&self.terms, &other.terms, budget)? {
+            return Ok(Self { terms });
+        }
         let mut sums: FxHashMap<Monomial, Integer> = FxHashMap::default();
         for (a, x) in &self.terms {
             budget.time()?;
@@ -372,6 +377,14 @@ impl Polynomial {
                 })
                 .collect::<Option<_>>()?;
             return Some(Self { terms });
+        }
+        if self.is_zero() {
+            return Some(Self::zero());
+        }
+        match packed::divide(&self.terms, &divisor.terms) {
+            Division::Exact(terms) => return Some(Self { terms }),
+            Division::Inexact => return None,
+            Division::TooWide => {}
         }
         let mut rest: BTreeMap<Monomial, Integer> = self.terms.iter().cloned().collect();
         let mut quotient = Vec::new();
@@ -528,6 +541,12 @@ impl Mul<&Polynomial> for &Polynomial {
         }
         if let [(monomial, coefficient)] = self.terms.as_slice() {
             return other.mul_monomial(monomial).scale(coefficient);
+        }
+        if self.len().min(other.len()) > 3
+            && let Ok(Some(terms)) =
+                packed::product(&self.terms, &other.terms, &Budget::unlimited())
+        {
+            return Polynomial { terms };
         }
         let mut sums: FxHashMap<Monomial, Integer> = FxHashMap::default();
         for (a, x) in &self.terms {
