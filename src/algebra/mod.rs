@@ -3,6 +3,7 @@
 //! Every type has one canonical form, so that equality of values is equality of representations.
 #![deny(clippy::float_arithmetic)]
 
+pub(crate) mod choice;
 pub mod factor;
 pub mod fraction;
 pub mod gcd;

@@ -39,6 +39,9 @@ pub trait Values<R: Ring> {
     fn polynomial(&self, polynomial: &Polynomial) -> Result<(R::Element, R::Element), R::Error>;
 }
 
+/// Numerators and denominators over a ring.
+type Slots<R> = Vec<(<R as Ring>::Element, <R as Ring>::Element)>;
+
 impl Determinant {
     /// Builds the structure; the inner error says that there is no unique solution whatever the values.
     ///
@@ -82,19 +85,7 @@ impl Determinant {
     /// # Errors
     /// When the ring's budget is reached.
     pub fn value<R: Ring>(&self, ring: &R, values: &dyn Values<R>) -> Result<R::Element, R::Error> {
-        let slots = self
-            .slots
-            .iter()
-            .map(|slot| match slot {
-                Slot::Value(Value::Symbol(symbol)) => values.symbol(*symbol),
-                Slot::Value(Value::Number(number)) => Ok((
-                    ring.integer(number.numerator()),
-                    ring.integer(number.denominator()),
-                )),
-                Slot::Polynomial(polynomial) => values.polynomial(polynomial),
-                Slot::Mutual(coupling) => values.mutual(*coupling),
-            })
-            .collect::<Result<Vec<_>, _>>()?;
+        let slots = self.slot_values(ring, values)?;
         let s = values.s();
         let mut states = vec![ring.one()];
         for layer in &self.diagram.layers {
@@ -139,6 +130,22 @@ impl Determinant {
         })
     }
 
+    /// Numerator and denominator of every slot.
+    fn slot_values<R: Ring>(&self, ring: &R, values: &dyn Values<R>) -> Result<Slots<R>, R::Error> {
+        self.slots
+            .iter()
+            .map(|slot| match slot {
+                Slot::Value(Value::Symbol(symbol)) => values.symbol(*symbol),
+                Slot::Value(Value::Number(number)) => Ok((
+                    ring.integer(number.numerator()),
+                    ring.integer(number.denominator()),
+                )),
+                Slot::Polynomial(polynomial) => values.polynomial(polynomial),
+                Slot::Mutual(coupling) => values.mutual(*coupling),
+            })
+            .collect()
+    }
+
     /// Number of terms of the expanded determinant before like terms are gathered.
     #[must_use]
     pub fn term_count(&self) -> Integer {
@@ -166,19 +173,7 @@ impl Determinant {
         table: &mut SymbolTable,
         definitions: &mut Vec<(Symbol, Polynomial)>,
     ) -> Result<Polynomial, Exceeded> {
-        let slots = self
-            .slots
-            .iter()
-            .map(|slot| match slot {
-                Slot::Value(Value::Symbol(symbol)) => values.symbol(*symbol),
-                Slot::Value(Value::Number(number)) => Ok((
-                    ring.integer(number.numerator()),
-                    ring.integer(number.denominator()),
-                )),
-                Slot::Polynomial(polynomial) => values.polynomial(polynomial),
-                Slot::Mutual(coupling) => values.mutual(*coupling),
-            })
-            .collect::<Result<Vec<_>, _>>()?;
+        let slots = self.slot_values(ring, values)?;
         let s = Polynomial::symbol(Symbol::S);
         let mut states = vec![Polynomial::one()];
         for layer in &self.diagram.layers {

@@ -307,6 +307,19 @@ fn has_is(text: &str) -> bool {
     }
 }
 
+/// Comments out, blanks squeezed to one.
+pub(crate) fn squeeze(text: &str) -> String {
+    let lines: Vec<&str> = text
+        .lines()
+        .map(|line| line.split('#').next().unwrap_or(""))
+        .collect();
+    lines
+        .join(" ")
+        .split_whitespace()
+        .collect::<Vec<_>>()
+        .join(" ")
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -8,6 +8,7 @@
 mod grading;
 mod univariate;
 
+use crate::algebra::choice::choices;
 use crate::algebra::gcd::gcd;
 use crate::algebra::integer::Integer;
 use crate::algebra::monomial::Monomial;
@@ -307,30 +308,6 @@ fn recombine(
         found.push(rest);
     }
     Ok(found)
-}
-
-/// All ascending choices of `size` out of `count`.
-fn choices(count: usize, size: usize) -> impl Iterator<Item = Vec<usize>> {
-    let mut next: Option<Vec<usize>> = (size <= count).then(|| (0..size).collect());
-    std::iter::from_fn(move || {
-        let current = next.clone()?;
-        let mut following = current.clone();
-        let mut at = size;
-        next = loop {
-            if at == 0 {
-                break None;
-            }
-            at -= 1;
-            if following[at] < count - size + at {
-                following[at] += 1;
-                for later in at + 1..size {
-                    following[later] = following[later - 1] + 1;
-                }
-                break Some(following);
-            }
-        };
-        Some(current)
-    })
 }
 
 /// A polynomial too large for one variable: irreducible when it is so at integer values of all

@@ -43,7 +43,7 @@ pub(super) fn factors(
     let mut size = 1;
     while 2 * size <= pieces.len() {
         budget.time()?;
-        let hit = super::choices(pieces.len(), size).find_map(|choice| {
+        let hit = crate::algebra::choice::choices(pieces.len(), size).find_map(|choice| {
             let lead = rest.last()?.clone();
             let product = choice.iter().fold(vec![lead], |product, &index| {
                 field.mul(&product, &pieces[index])

@@ -1,6 +1,7 @@
 //! Factors that cancel by relations, and the smallest sets that are enough.
 
 use super::*;
+use crate::algebra::choice::choices;
 
 impl Auditor<'_> {
     pub(super) fn matched_entries(
@@ -92,28 +93,6 @@ pub(super) fn binomial(count: usize, size: usize) -> usize {
 }
 
 /// All subsets of a size, in file order.
-pub(super) fn subsets(
-    open: &[RelationId],
-    size: usize,
-) -> impl Iterator<Item = BTreeSet<RelationId>> + '_ {
-    let mut next: Option<Vec<usize>> = (size <= open.len()).then(|| (0..size).collect());
-    std::iter::from_fn(move || {
-        let current = next.clone()?;
-        let mut following = current.clone();
-        let mut at = size;
-        next = loop {
-            if at == 0 {
-                break None;
-            }
-            at -= 1;
-            if following[at] < open.len() - size + at {
-                following[at] += 1;
-                for later in at + 1..size {
-                    following[later] = following[later - 1] + 1;
-                }
-                break Some(following);
-            }
-        };
-        Some(current.into_iter().map(|index| open[index]).collect())
-    })
+fn subsets(open: &[RelationId], size: usize) -> impl Iterator<Item = BTreeSet<RelationId>> + '_ {
+    choices(open.len(), size).map(|choice| choice.into_iter().map(|index| open[index]).collect())
 }

@@ -15,6 +15,7 @@ use crate::budget::{Budget, Limits};
 use crate::diagnostic::Diagnostic;
 use crate::language::expand::{Flat, Scope, plain};
 use crate::language::nearest::nearest;
+use crate::language::statement::squeeze;
 use crate::language::syntax::{Expression, Name, PartValue, Statement, StatementKind};
 use crate::network::{
     Dimension, DriveId, ElementId, Network, NetworkBuilder, NodeId, Origin, Sign, SymbolFacts,
@@ -401,16 +402,6 @@ impl Lowering<'_> {
 
     /// Text of a place, blanks squeezed.
     pub(crate) fn text(&self, place: Span) -> String {
-        let lines: Vec<&str> = self
-            .sources
-            .slice(place)
-            .lines()
-            .map(|line| line.split('#').next().unwrap_or(""))
-            .collect();
-        lines
-            .join(" ")
-            .split_whitespace()
-            .collect::<Vec<_>>()
-            .join(" ")
+        squeeze(self.sources.slice(place))
     }
 }

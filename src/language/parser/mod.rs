@@ -6,7 +6,7 @@ use pest::iterators::Pair;
 use crate::diagnostic::Diagnostic;
 use crate::language::mistake;
 use crate::language::number::{NumberError, read};
-use crate::language::statement::{Form, Piece, form, split};
+use crate::language::statement::{Form, Piece, form, split, squeeze};
 use crate::language::syntax::{
     Asked, Claimed, Compare, Deviation, Expression, ExpressionNode, Group, Link, Listed, Literal,
     Module, Name, NamePart, OptionValue, Parameter, PartValue, Statement, StatementKind, Terminal,
@@ -473,19 +473,6 @@ fn string_text(pair: &Pair<'_, Rule>) -> String {
 fn one_letter(text: &str) -> String {
     text.replace('\u{2126}', "\u{3A9}")
         .replace('\u{B5}', "\u{3BC}")
-}
-
-/// Comments out, blanks squeezed to one.
-fn squeeze(text: &str) -> String {
-    let lines: Vec<&str> = text
-        .lines()
-        .map(|line| line.split('#').next().unwrap_or(""))
-        .collect();
-    lines
-        .join(" ")
-        .split_whitespace()
-        .collect::<Vec<_>>()
-        .join(" ")
 }
 
 /// What a rule is called in a message.
