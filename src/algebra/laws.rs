@@ -256,3 +256,20 @@ fn factors_multiply_back_and_do_not_factor_further() {
         }
     }
 }
+
+#[test]
+fn common_factors_in_many_variables_are_found() {
+    let mut random = Random(71);
+    for round in 0..12 {
+        let symbols = Random::symbols(6 + round % 7);
+        let degree = if round % 2 == 0 { 1 } else { 2 };
+        let mut make =
+            |terms| &random.polynomial(&symbols, terms, degree) + &Polynomial::constant(1);
+        let (f, g, h) = (make(12), make(12), make(9));
+        let (a, b) = (&f * &h, &g * &h);
+        let budget = Budget::default();
+        let (common, left, right) = cofactors(&a, &b, &budget).expect("within the budget");
+        assert_eq!((&common * &left, &common * &right), (a, b), "round {round}");
+        assert!(common.div_exact(&h).is_some(), "round {round}");
+    }
+}

@@ -1,6 +1,7 @@
 //! Evaluation at large integers, one variable at a time, proven by division; where the integers would
 //! grow beyond reason, the primitive remainder sequence.
 
+use super::sparse;
 use crate::algebra::integer::Integer;
 use crate::algebra::monomial::Monomial;
 use crate::algebra::polynomial::Polynomial;
@@ -18,10 +19,15 @@ pub(super) fn gcd(
     variables: &[Symbol],
     budget: &Budget,
 ) -> Result<Polynomial, Exceeded> {
-    match evaluated(a, b, variables) {
-        Some(found) => Ok(found),
-        None => remainders(a, b, variables, budget),
+    if variables.len() <= 3
+        && let Some(found) = evaluated(a, b, variables)
+    {
+        return Ok(found);
     }
+    if let Some(found) = sparse::gcd(a, b, variables, budget)? {
+        return Ok(found);
+    }
+    remainders(a, b, variables, budget)
 }
 
 fn evaluated(a: &Polynomial, b: &Polynomial, variables: &[Symbol]) -> Option<Polynomial> {

@@ -1,8 +1,8 @@
 //! Greatest common divisors of polynomials over the integers.
 //!
 //! First the variables the divisor can contain are found modulo a prime; the others are set to
-//! integers. What is left is small: evaluation at one large integer, one variable at a time, and
-//! proof by exact division (Char, Geddes & Gonnet 1989).
+//! integers. Up to three variables are evaluated at one large integer each (Char, Geddes & Gonnet 1989);
+//! more are found sparsely modulo primes (Zippel 1979). Exact division proves every divisor.
 
 use crate::algebra::integer::Integer;
 use crate::algebra::polynomial::Polynomial;
@@ -12,6 +12,7 @@ use crate::algebra::univariate::Univariate;
 use crate::budget::{Budget, Exceeded};
 
 mod heuristic;
+mod sparse;
 
 /// gcd(a, b), its number included, leading coefficient positive; gcd(0, 0) = 0.
 ///
