@@ -124,7 +124,13 @@ fn shared_variables(a: &Polynomial, b: &Polynomial, attempt: u64) -> Vec<Symbol>
     shared
         .into_iter()
         .zip(left.iter().zip(&right))
-        .filter(|(_, (left, right))| left.gcd(right, &field).degree() != Some(0))
+        .filter(|(symbol, (left, right))| {
+            // At an unlucky point a degree drops; the variable then counts as shared.
+            let full = |image: &Univariate, polynomial: &Polynomial| {
+                image.degree() == Some(polynomial.degree(*symbol) as usize)
+            };
+            !full(left, a) || !full(right, b) || left.gcd(right, &field).degree() != Some(0)
+        })
         .map(|(symbol, _)| symbol)
         .collect()
 }
