@@ -301,3 +301,33 @@ fn an_output_that_is_full_ends_with_4() {
         .expect("the command starts");
     assert_eq!(status(&output), 4);
 }
+
+/// A loop around two sections, closed on paper: a function of a function.
+const CLOSED: &str = "in -Vs- ground; in -R1- a -C1- ground; a -R2- b -C2- ground; \
+                      derive H = voltage(b) / Vs; derive X = H/(1 + H)^9";
+
+#[test]
+fn an_order_that_was_not_found_is_not_claimed() {
+    let text = format!("{CLOSED}; claim order(H) = 2; claim order(X) = 0; claim order(X) = 18");
+    let cut_short = cutloop(&[
+        "check", "--format", "json", "--budget", "terms=50", "-e", &text,
+    ]);
+    assert_eq!(status(&cut_short), 3);
+    let answer = json(&cut_short);
+    let claims = answer["claims"].as_array().expect("claims");
+    let holds: Vec<_> = claims.iter().map(|claim| claim["holds"].clone()).collect();
+    assert_eq!(
+        holds[1..],
+        [serde_json::Value::Null, serde_json::Value::Null]
+    );
+
+    let ledger = cutloop(&[
+        "order", "--format", "json", "--budget", "terms=50", "-e", CLOSED,
+    ]);
+    assert_eq!(status(&ledger), 3);
+    assert!(json(&ledger)["results"][1]["order"].is_null());
+
+    let whole = cutloop(&["order", "--format", "json", "-e", CLOSED]);
+    assert_eq!(status(&whole), 0);
+    assert_eq!(json(&whole)["results"][1]["order"], 18);
+}

@@ -3,7 +3,7 @@
 //! Canonical form: numerator and denominator share no polynomial and no number; the leading
 //! coefficient of the denominator is positive. Equal fractions are therefore identical.
 
-use crate::algebra::gcd::gcd;
+use crate::algebra::gcd::{cofactors, gcd};
 use crate::algebra::integer::Integer;
 use crate::algebra::monomial::Monomial;
 use crate::algebra::polynomial::Polynomial;
@@ -139,7 +139,7 @@ impl Fraction {
         self.numerator.contains(symbol) || self.denominator.contains(symbol)
     }
 
-    /// self + other
+    /// self + other, with common factors of the denominators taken out first (Henrici 1956).
     ///
     /// # Errors
     /// When the budget is reached.
@@ -148,10 +148,15 @@ impl Fraction {
             let sum = &self.numerator + &other.numerator;
             return Self::quotient(sum, self.denominator.clone(), budget);
         }
-        let left = self.numerator.product(&other.denominator, budget)?;
-        let right = other.numerator.product(&self.denominator, budget)?;
-        let below = self.denominator.product(&other.denominator, budget)?;
-        Self::quotient(&left + &right, below, budget)
+        let (common, left, right) = cofactors(&self.denominator, &other.denominator, budget)?;
+        let sum =
+            &self.numerator.product(&right, budget)? + &other.numerator.product(&left, budget)?;
+        if sum.is_zero() {
+            return Ok(Self::zero());
+        }
+        let (_, sum, common) = cofactors(&sum, &common, budget)?;
+        let below = left.product(&right, budget)?.product(&common, budget)?;
+        Ok(Self::signed(sum, below))
     }
 
     /// self − other
@@ -162,14 +167,17 @@ impl Fraction {
         self.add(&other.neg(), budget)
     }
 
-    /// self · other
+    /// self · other, each numerator reduced against the other denominator before (Henrici 1956).
     ///
     /// # Errors
     /// When the budget is reached.
     pub fn mul(&self, other: &Self, budget: &Budget) -> Result<Self, Exceeded> {
-        let above = self.numerator.product(&other.numerator, budget)?;
-        let below = self.denominator.product(&other.denominator, budget)?;
-        Self::quotient(above, below, budget)
+        if self.is_zero() || other.is_zero() {
+            return Ok(Self::zero());
+        }
+        let (_, a, d) = cofactors(&self.numerator, &other.denominator, budget)?;
+        let (_, b, c) = cofactors(&other.numerator, &self.denominator, budget)?;
+        Ok(Self::signed(a.product(&b, budget)?, c.product(&d, budget)?))
     }
 
     /// self / other; `None` when other is zero.
@@ -286,28 +294,57 @@ fn put_in(
     let mut denominator = Polynomial::one();
     let symbols = polynomial.symbols();
     // All at once: the values may hold the symbols themselves, so the sum is built term by term.
-    let values: Vec<(Symbol, Fraction, u32)> = symbols
+    let values: Vec<(Symbol, Fraction)> = symbols
         .into_iter()
         .filter_map(|symbol| Some((symbol, value(symbol)?)))
         .filter(|(symbol, fraction)| fraction.as_symbol() != Some(*symbol))
-        .map(|(symbol, fraction)| (symbol, fraction, polynomial.degree(symbol)))
         .collect();
     if values.is_empty() {
         return Ok(Fraction::from(polynomial.clone()));
     }
-    let mut sum: Vec<(Monomial, Integer)> = Vec::new();
-    for (_, fraction, degree) in &values {
-        denominator = denominator.product(&fraction.denominator.power(*degree, budget)?, budget)?;
+    // Values with one denominator share its powers: as many as the term with most of them needs.
+    let mut below: Vec<&Polynomial> = Vec::new();
+    let group: Vec<usize> = values
+        .iter()
+        .map(|(_, fraction)| {
+            let known = below.iter().position(|it| *it == &fraction.denominator);
+            known.unwrap_or_else(|| {
+                below.push(&fraction.denominator);
+                below.len() - 1
+            })
+        })
+        .collect();
+    let powers = |monomial: &Monomial| {
+        let mut totals = vec![0; below.len()];
+        for ((symbol, _), &place) in values.iter().zip(&group) {
+            totals[place] += monomial.exponent(*symbol);
+        }
+        totals
+    };
+    let mut most = vec![0; below.len()];
+    for (monomial, _) in polynomial.terms() {
+        for (most, power) in most.iter_mut().zip(powers(monomial)) {
+            *most = power.max(*most);
+        }
     }
+    for (divisor, power) in below.iter().zip(&most) {
+        denominator = denominator.product(&divisor.power(*power, budget)?, budget)?;
+    }
+    let mut sum: Vec<(Monomial, Integer)> = Vec::new();
     for (monomial, coefficient) in polynomial.terms() {
         let mut rest = monomial.clone();
         let mut term = Polynomial::constant(coefficient.clone());
-        for (symbol, fraction, degree) in &values {
+        for (symbol, fraction) in &values {
             let (without, exponent) = rest.without(*symbol);
             rest = without;
-            let above = fraction.numerator.power(exponent, budget)?;
-            let below = fraction.denominator.power(degree - exponent, budget)?;
-            term = term.product(&above, budget)?.product(&below, budget)?;
+            if exponent > 0 {
+                term = term.product(&fraction.numerator.power(exponent, budget)?, budget)?;
+            }
+        }
+        for ((divisor, most), used) in below.iter().zip(&most).zip(powers(monomial)) {
+            if *most > used && !divisor.is_one() {
+                term = term.product(&divisor.power(most - used, budget)?, budget)?;
+            }
         }
         sum.extend(term.mul_monomial(&rest).terms().iter().cloned());
         if sum.len() > budget.limits().terms.saturating_mul(2) {
@@ -343,5 +380,87 @@ impl From<Rational> for Fraction {
             numerator: Polynomial::constant(value.numerator().clone()),
             denominator: Polynomial::constant(value.denominator().clone()),
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::algebra::SymbolTable;
+
+    /// A polynomial of many terms in many variables, different for each salt.
+    fn long(symbols: &[Polynomial], salt: usize) -> Polynomial {
+        let mut sum = Polynomial::constant(1 + salt as i64);
+        for (i, a) in symbols.iter().enumerate() {
+            for (j, b) in symbols.iter().enumerate().skip(i + 1) {
+                let c = &symbols[(i * j + salt) % symbols.len()];
+                let number = Polynomial::constant((1 + (i + 3 * j + salt) % 5) as i64);
+                sum = &sum + &(&(&(a * b) * c) * &number);
+            }
+        }
+        sum
+    }
+
+    fn symbols(many: usize) -> Vec<Polynomial> {
+        let mut table = SymbolTable::new();
+        (0..many)
+            .map(|index| Polynomial::symbol(table.intern(&format!("x{index}"))))
+            .collect()
+    }
+
+    #[test]
+    fn sums_and_products_are_what_the_definition_says() {
+        let x = symbols(3);
+        let budget = Budget::unlimited();
+        let parts: Vec<Polynomial> = vec![
+            &x[0] + &x[1],
+            &x[1] - &x[2],
+            &(&x[0] * &x[2]) + &Polynomial::one(),
+            Polynomial::constant(6),
+            &x[0] * &Polynomial::constant(4),
+        ];
+        let mut values = Vec::new();
+        for above in &parts {
+            for below in &parts {
+                let product = above * &parts[0];
+                let value = Fraction::new(product, below * &parts[1], &budget);
+                values.push(value.expect("in budget").expect("no zero"));
+            }
+        }
+        for a in &values {
+            for b in &values {
+                let sum = &(&a.numerator * &b.denominator) + &(&b.numerator * &a.denominator);
+                let below = &a.denominator * &b.denominator;
+                let above = &a.numerator * &b.numerator;
+                let whole = |above, below| Fraction::new(above, below, &budget).expect("ok");
+                assert_eq!(
+                    Some(a.add(b, &budget).expect("ok")),
+                    whole(sum, below.clone())
+                );
+                assert_eq!(Some(a.mul(b, &budget).expect("ok")), whole(above, below));
+            }
+            assert!(a.sub(a, &budget).expect("ok").is_zero());
+        }
+    }
+
+    #[test]
+    fn a_closed_loop_needs_no_large_common_factor() {
+        let x = symbols(14);
+        let budget = Budget::unlimited();
+        let (above, below) = (long(&x, 1), long(&x, 4));
+        let open = Fraction::new(above.clone(), below.clone(), &budget);
+        let open = open.expect("ok").expect("no zero");
+        let mut table = SymbolTable::new();
+        let names: Vec<Symbol> = (0..15).map(|i| table.intern(&format!("x{i}"))).collect();
+        let name = Polynomial::symbol(names[14]);
+        let closing = Fraction::new(name.clone(), &name + &Polynomial::one(), &budget);
+        let closing = closing.expect("ok").expect("no zero");
+        let put = |symbol: Symbol| (symbol == names[14]).then(|| open.clone());
+        let closed = closing
+            .substitute(&put, &budget)
+            .expect("ok")
+            .expect("no zero");
+        let expected = Fraction::signed(above.clone(), &above + &below);
+        assert_eq!(closed, expected);
     }
 }

@@ -196,8 +196,8 @@ impl Evidence<'_> {
         match subject {
             Subject::Network => count(claimed, self.order.network),
             Subject::Function(function) => match (self.report)(function) {
-                Some(report) => count(claimed, report.order),
-                None => not_known(),
+                Some(report) if report.degrees_known() => count(claimed, report.order),
+                _ => not_known(),
             },
         }
     }

@@ -125,6 +125,15 @@ pub struct FunctionReport {
     pub checked_points: u32,
 }
 
+impl FunctionReport {
+    /// Whether order, numerator order and zero are known. They are found before the formula, from
+    /// the network; a function of functions or a limit has them from its formula alone.
+    #[must_use]
+    pub fn degrees_known(&self) -> bool {
+        self.network.is_some() || !matches!(self.formula, Formula::OverBudget(_))
+    }
+}
+
 /// A rational function of s.
 #[derive(Clone, Debug)]
 pub enum Formula {
@@ -132,7 +141,7 @@ pub enum Formula {
     Expanded(Expanded),
     /// Shared sub-expressions, for results that are long when expanded.
     Nested(Nested),
-    /// The budget was reached before it was written down; degrees are still right.
+    /// The budget was reached before it was written down; see [`FunctionReport::degrees_known`].
     OverBudget(Exceeded),
 }
 

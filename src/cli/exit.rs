@@ -44,7 +44,7 @@ impl Exit {
             Verdict::Undecided => Self::Undecided,
         });
         let results = report.results.iter().map(|result| match result.formula {
-            Formula::OverBudget(_) if formulas => Self::Undecided,
+            Formula::OverBudget(_) if formulas || !result.degrees_known() => Self::Undecided,
             _ => Self::Answered,
         });
         claims.chain(results).max().unwrap_or(Self::Answered)

@@ -184,6 +184,11 @@ fn insert_degrees(
     result: &FunctionReport,
     names: &Names<'_>,
 ) {
+    if !result.degrees_known() {
+        object.insert("order".into(), Value::Null);
+        object.insert("numerator_order".into(), Value::Null);
+        return;
+    }
     object.insert("order".into(), json!(result.order));
     object.insert("numerator_order".into(), json!(result.numerator_order));
     if let Some(network) = result.network {

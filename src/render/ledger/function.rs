@@ -28,6 +28,11 @@ pub fn function(answer: &Answer<'_>, result: &FunctionReport) -> Vec<Line> {
         lines.extend(hidden_lines(answer, result, hidden));
         lines.push(Line::Rule);
     }
+    if !result.degrees_known() {
+        let evidence = vec![Evidence::clause("not known: the budget was reached")];
+        lines.push(note(format!("order of {}", result.name), evidence));
+        return lines;
+    }
     lines.push(entry(
         false,
         result.order as usize,
@@ -231,6 +236,9 @@ fn no_effect_line(answer: &Answer<'_>, result: &FunctionReport) -> Option<Line> 
 /// `order 1 of 2 natural frequencies · numerator degree 0`.
 #[must_use]
 pub fn degrees(result: &FunctionReport) -> String {
+    if !result.degrees_known() {
+        return "order not known".to_owned();
+    }
     let mut text = format!("order {}", result.order);
     if let (Some(network), Some(hidden)) = (result.network, result.hidden) {
         match (hidden, network) {

@@ -33,7 +33,9 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
         Formula::OverBudget(exceeded) => {
             let sentence = sentence::over_budget(exceeded);
             text.push_str(&format!("  {}\n", paint.unsure(&sentence)));
-            text.push_str(&remark("its degrees are exact all the same", page));
+            if result.degrees_known() {
+                text.push_str(&remark("its degrees are exact all the same", page));
+            }
         }
     }
     text.push('\n');
