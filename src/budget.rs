@@ -57,6 +57,13 @@ impl Budget {
         })
     }
 
+    /// The same budget, its clock running, with at most `terms` terms.
+    #[must_use]
+    pub fn with_terms(mut self, terms: usize) -> Self {
+        self.limits.terms = self.limits.terms.min(terms);
+        self
+    }
+
     /// The limits.
     #[must_use]
     pub fn limits(&self) -> Limits {

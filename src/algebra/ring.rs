@@ -36,6 +36,13 @@ pub trait Ring {
     fn neg(&self, a: &Self::Element) -> Self::Element;
     /// = 0
     fn is_zero(&self, a: &Self::Element) -> bool;
+    /// Whether there is room for all these at once.
+    ///
+    /// # Errors
+    /// When a budget is reached.
+    fn room(&self, _elements: &[Self::Element]) -> Result<(), Self::Error> {
+        Ok(())
+    }
 }
 
 impl Ring for PrimeField {
@@ -111,6 +118,9 @@ impl Ring for UnivariateRing {
     }
 }
 
+/// Terms of intermediate results for each term of the result.
+const MERGED: usize = 4;
+
 /// Polynomials over the integers, within a budget.
 #[derive(Clone, Copy, Debug)]
 pub struct PolynomialRing<'a> {
@@ -150,5 +160,11 @@ impl Ring for PolynomialRing<'_> {
 
     fn is_zero(&self, a: &Polynomial) -> bool {
         a.is_zero()
+    }
+
+    /// Of independent values no term of a layer is lost later; under relations terms merge.
+    fn room(&self, elements: &[Polynomial]) -> Result<(), Exceeded> {
+        let all: usize = elements.iter().map(Polynomial::len).sum();
+        self.budget.terms(all / MERGED)
     }
 }

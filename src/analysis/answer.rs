@@ -23,6 +23,9 @@ use crate::budget::{Budget, Exceeded};
 use crate::diagnostic::Diagnostic;
 use crate::network::{Ask, Assertion, Network};
 
+/// Terms of a formula that nobody asked for; it still tells where the order drops.
+const UNASKED: usize = 10_000;
+
 /// Answers what is wanted of a network.
 ///
 /// # Errors
@@ -61,12 +64,18 @@ pub fn answer(network: &Network, wanted: &Wanted, budget: &Budget) -> Result<Rep
         Err(error) => return Err(unusable(*error)),
     };
     let order = ledger(network, &[], degree, valuation);
+    let expansion = if wanted.formulas || wanted.claims {
+        *budget
+    } else {
+        budget.with_terms(UNASKED)
+    };
     let run = Run {
         setting: Setting {
             network,
             rooted: &rooted,
             couplings: &couplings,
             budget,
+            expansion: &expansion,
         },
         knowledge: Knowledge::new(network, &plain, budget)?,
         plain: &plain,

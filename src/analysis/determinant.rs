@@ -72,6 +72,18 @@ impl Determinant {
         })
     }
 
+    /// The symbols its values are made of.
+    pub(crate) fn symbols(&self) -> Vec<Symbol> {
+        self.slots
+            .iter()
+            .flat_map(|slot| match slot {
+                Slot::Value(Value::Symbol(symbol)) => vec![*symbol],
+                Slot::Value(Value::Number(_)) | Slot::Mutual(_) => Vec::new(),
+                Slot::Polynomial(polynomial) => polynomial.symbols(),
+            })
+            .collect()
+    }
+
     /// States of the diagram.
     #[must_use]
     pub fn states(&self) -> usize {
@@ -120,6 +132,7 @@ impl Determinant {
                     ring.add(target, &term)?
                 };
             }
+            ring.room(&next)?;
             states = next;
         }
         let value = states.into_iter().next().unwrap_or_else(|| ring.zero());
@@ -158,6 +171,35 @@ impl Determinant {
             states = next;
         }
         states.into_iter().next().unwrap_or_default()
+    }
+
+    /// Terms that stay apart when like terms are gathered, where no two sets of choices can give one
+    /// monomial: every value stands in one part, and the options of a part weigh differently.
+    /// Relations must not tie values; `None` where that cannot be told.
+    #[must_use]
+    pub fn distinct_terms(&self) -> Option<Integer> {
+        let mut owner = vec![None; self.slots.len()];
+        for (index, block) in self.blocks.iter().enumerate() {
+            let mut weights: Vec<Vec<Atom>> = Vec::with_capacity(block.choices.len());
+            for choice in &block.choices {
+                let mut symbols = Vec::new();
+                for &atom in &choice.weight.atoms {
+                    let Atom::Above(slot) = atom else { continue };
+                    if !matches!(self.slots[slot], Slot::Value(Value::Symbol(_))) {
+                        continue;
+                    }
+                    if *owner[slot].get_or_insert(index) != index {
+                        return None;
+                    }
+                    symbols.push(atom);
+                }
+                if weights.contains(&symbols) {
+                    return None;
+                }
+                weights.push(symbols);
+            }
+        }
+        Some(self.term_count())
     }
 
     /// The determinant by shared sub-expressions: definitions in order, then the value.

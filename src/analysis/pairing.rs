@@ -4,7 +4,7 @@ use std::collections::BTreeSet;
 use std::convert::Infallible;
 
 use crate::algebra::univariate::Univariate;
-use crate::algebra::{Polynomial, PolynomialRing, PrimeField, Ring, UnivariateRing};
+use crate::algebra::{Polynomial, PolynomialRing, PrimeField, Ring, Symbol, UnivariateRing};
 use crate::analysis::contraction::Singular;
 use crate::analysis::determinant::{Determinant, Values};
 use crate::analysis::point::{Choice, Point};
@@ -211,6 +211,37 @@ impl Pairing {
                 })
         };
         (count(&self.upper), count(&self.lower))
+    }
+
+    /// The symbols of all values.
+    pub(crate) fn symbols(&self) -> BTreeSet<Symbol> {
+        [&self.upper, &self.lower]
+            .into_iter()
+            .flat_map(|side| {
+                let determinants = [&side.plus, &side.minus].into_iter().flatten();
+                let values = determinants.flat_map(Determinant::symbols);
+                values.chain(side.factor.symbols()).collect::<Vec<_>>()
+            })
+            .collect()
+    }
+
+    /// Fails where it is plain from the number of spanning trees that an expanded determinant would
+    /// pass the budget. Tells nothing where relations let terms merge.
+    pub(crate) fn writable(&self, network: &Network, budget: &Budget) -> Result<(), Exceeded> {
+        if network.relations().len() > 0 {
+            return Ok(());
+        }
+        for determinant in [&self.upper.plus, &self.lower.plus].into_iter().flatten() {
+            if let Some(count) = determinant.distinct_terms() {
+                budget.terms(
+                    count
+                        .to_i64()
+                        .and_then(|count| usize::try_from(count).ok())
+                        .unwrap_or(usize::MAX),
+                )?;
+            }
+        }
+        Ok(())
     }
 
     /// The determinants of both sides: (plus, minus, factor).

@@ -91,6 +91,35 @@ impl Point {
         Some(point)
     }
 
+    /// All nominals with every relation kept; π and what has no nominal are random.
+    pub(crate) fn nominal(network: &Network, field: &PrimeField) -> Option<Self> {
+        let mut point = Self {
+            values: vec![None; network.symbols().len()],
+            seed: 0,
+            salt: None,
+            mutual: Vec::new(),
+            field: *field,
+        };
+        for facts in network.all_facts() {
+            if let Some(nominal) = &facts.nominal
+                && network.set_by(facts.symbol).is_none()
+            {
+                let value = Quotient::constant(field.from_rational(nominal)?);
+                point.values[facts.symbol.index()] = Some(value);
+            }
+        }
+        for id in resolution_order(network) {
+            let sets = &network.relation(id).sets;
+            for (symbol, value) in sets {
+                let found = point.fraction(value, field, &|_| 0)?;
+                point.values[symbol.index()] = Some(found);
+            }
+            point.share_denominator(sets, field);
+        }
+        point.couple(network)?;
+        Some(point)
+    }
+
     /// M = k·√(L1·L2); `None` where the product is no square modulo the prime.
     fn couple(&mut self, network: &Network) -> Option<()> {
         let field = self.field;

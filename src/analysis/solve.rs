@@ -30,6 +30,8 @@ pub(crate) struct Setting<'a> {
     pub(crate) couplings: &'a Couplings,
     /// Bounds.
     pub(crate) budget: &'a Budget,
+    /// Bounds for formulas; smaller where none is asked for.
+    pub(crate) expansion: &'a Budget,
 }
 
 /// A question with its determinants and degrees.
@@ -224,7 +226,8 @@ fn reduce(setting: &Setting<'_>, pairing: &Pairing, degrees: Degrees) -> Result<
             common: Polynomial::one(),
         });
     }
-    let budget = setting.budget;
+    let budget = setting.expansion;
+    pairing.writable(setting.network, budget)?;
     let symbolic = Symbolic::new(setting.network, setting.rooted, setting.couplings, budget)?;
     let ring = PolynomialRing { budget };
     let (numerator, denominator) = pairing.expand(&ring, &symbolic)?;

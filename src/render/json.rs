@@ -203,11 +203,13 @@ fn insert_degrees(
         "no_effect".into(),
         no_effect.map(|it| answer.part(it.element)).collect(),
     );
-    let drops = result.drops_when.iter();
-    object.insert(
-        "drops_when".into(),
-        drops.map(|it| drop(it, names)).collect(),
-    );
+    if matches!(result.formula, Formula::Expanded(_)) {
+        let drops = result.drops_when.iter();
+        object.insert(
+            "drops_when".into(),
+            drops.map(|it| drop(it, names)).collect(),
+        );
+    }
 }
 
 fn drop(drop: &Drop, names: &Names<'_>) -> Value {

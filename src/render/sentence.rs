@@ -1,6 +1,6 @@
 //! Words and short sentences that all writers share.
 
-use crate::analysis::report::{Hides, Stored, Verdict};
+use crate::analysis::report::{FunctionReport, Hides, Stored, Verdict};
 use crate::budget::Exceeded;
 use crate::network::CancellationClass;
 use crate::render::names::natural;
@@ -13,6 +13,13 @@ pub fn verdict(verdict: Verdict) -> &'static str {
         Verdict::No => "no",
         Verdict::Undecided => "not decided",
     }
+}
+
+/// What stands in place of cancellations that were not found; functions of functions have none.
+#[must_use]
+pub fn uncancelled(result: &FunctionReport) -> Option<&'static str> {
+    let missing = result.network.is_some() && result.cancellations.is_none();
+    missing.then_some("What cancels was counted; its factors were not found within the budget.")
 }
 
 /// The class of a cancellation.

@@ -2,6 +2,7 @@
 
 mod matched;
 mod structural;
+mod unwritten;
 
 use std::collections::{BTreeMap, BTreeSet};
 use std::time::Duration;
@@ -80,21 +81,16 @@ impl Auditor<'_> {
 
     fn run(&self) -> Result<Audit, Exceeded> {
         let mut cancellations = Vec::new();
-        let Ok(reduced) = &self.solved.function else {
-            return Ok(Audit {
-                cancellations,
-                nominals_missing: Vec::new(),
-            });
-        };
         if self.solved.degrees.zero {
             return Ok(Audit {
                 cancellations,
                 nominals_missing: Vec::new(),
             });
         }
-        if reduced.common.degree(Symbol::S) > 0 {
+        let common = self.common()?;
+        if common.degree(Symbol::S) > 0 {
             let structural = self.structural()?;
-            let mut rest = reduced.common.clone();
+            let mut rest = common.clone();
             for found in &structural {
                 for _ in 0..found.multiplicity {
                     rest = rest.div_exact(&found.factor).unwrap_or(rest);
@@ -107,16 +103,15 @@ impl Auditor<'_> {
                 self.matched_entries(&factor, multiplicity, &mut cancellations);
             }
         }
-        let nominals_missing = self.coincidental(&reduced.fraction, &mut cancellations)?;
+        let nominals_missing = match &self.solved.function {
+            Ok(reduced) => self.coincidental(&reduced.fraction, &mut cancellations)?,
+            Err(_) => self.coincidental_by_numbers(&common, &mut cancellations)?,
+        };
         Ok(Audit {
             cancellations,
             nominals_missing,
         })
     }
-
-    // ---- structural -----------------------------------------------------------------------------
-
-    // ---- matched --------------------------------------------------------------------------------
 
     // ---- coincidental ---------------------------------------------------------------------------
 

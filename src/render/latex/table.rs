@@ -70,7 +70,10 @@ fn spell_evidence(evidence: &Evidence) -> String {
 /// What cancels in one function; empty for functions of functions.
 pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> String {
     let list = match &result.cancellations {
-        None => return String::new(),
+        None => {
+            let words = sentence::uncancelled(result);
+            return words.map_or_else(String::new, |words| format!("{words}\n"));
+        }
         Some(list) if list.is_empty() => {
             return format!("Nothing cancels in ${}$.\n", name(&result.name));
         }

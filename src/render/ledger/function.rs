@@ -1,7 +1,7 @@
 //! The account of one function.
 
 use crate::algebra::Symbol;
-use crate::analysis::report::{Cancellation, Drop, FunctionReport, Hides, Verdict};
+use crate::analysis::report::{Cancellation, Drop, Formula, FunctionReport, Hides, Verdict};
 use crate::network::{Ask, CancellationClass};
 use crate::render::answer::Answer;
 use crate::render::ledger::{Evidence, Line, entry, note, noun};
@@ -175,6 +175,7 @@ fn order_evidence(answer: &Answer<'_>, result: &FunctionReport) -> Vec<Evidence>
         )));
     }
     if result.order > 0
+        && matches!(result.formula, Formula::Expanded(_))
         && result
             .drops_when
             .iter()

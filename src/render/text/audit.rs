@@ -14,10 +14,13 @@ use crate::render::text::paint::Paint;
 
 /// The cancellations of one function; empty for functions of functions.
 pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page) -> String {
-    let Some(list) = &result.cancellations else {
-        return String::new();
-    };
     let paint = Paint(page.colour);
+    let Some(list) = &result.cancellations else {
+        return match sentence::uncancelled(result) {
+            Some(words) => format!("  {}\n", paint.quiet(words)),
+            None => String::new(),
+        };
+    };
     let mut text = String::new();
     if list.is_empty() && !result.zero {
         text.push_str("  Nothing cancels.\n");
