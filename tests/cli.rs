@@ -331,3 +331,14 @@ fn an_order_that_was_not_found_is_not_claimed() {
     assert_eq!(status(&whole), 0);
     assert_eq!(json(&whole)["results"][1]["order"], 18);
 }
+
+#[test]
+fn the_form_of_a_formula_can_be_chosen() {
+    let network = "in -Vs- ground; in -R1- out -(R2 || C1)- ground; derive H = voltage(out)/Vs";
+    let shown = |form: &str| answers(&cutloop(&["formula", "-e", network, "--form", form]));
+    assert!(!shown("coefficients").contains('τ'));
+    assert!(shown("designer").contains("τ = (R1 ∥ R2)·C1"));
+    assert!(shown("normalised").contains("b1 = (R1 ∥ R2)·C1"));
+    assert!(shown("normalised").contains("a0 = R2/(R1 + R2)"));
+    assert!(shown("nested").contains("b1 = R1·R2·C1"));
+}

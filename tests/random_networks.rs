@@ -7,7 +7,7 @@
 use std::collections::BTreeMap;
 use std::fmt::Write as _;
 
-use cutloop::algebra::{Polynomial, Symbol};
+use cutloop::algebra::{Fraction, Polynomial, Symbol};
 use cutloop::analysis::answer;
 use cutloop::analysis::report::{Failure, Formula, Wanted};
 use cutloop::budget::Budget;
@@ -878,4 +878,67 @@ fn agrees_with_an_independent_solution_on_random_networks() {
         solved * 3 > trials as usize,
         "only {solved} of {trials} networks from seed {first} have a unique solution"
     );
+}
+
+/// Compares each form that is shown with the quotient of polynomials; gives the number of forms.
+fn forms(seed: u64) -> usize {
+    let case = make(seed);
+    let mut sources = Sources::new();
+    let main = sources.add("random", case.text.as_str());
+    let load = |_: &str, _: &str| Err("none".to_owned());
+    let options = ReadOptions {
+        set: &[],
+        load: &load,
+    };
+    let Some(network) = read(&mut sources, main, &options).network else {
+        return 0;
+    };
+    let wanted = Wanted {
+        formulas: true,
+        forms: true,
+        ..Wanted::default()
+    };
+    let budget = Budget::unlimited();
+    let Ok(report) = answer(&network, &wanted, &Budget::default()) else {
+        return 0;
+    };
+    let mut count = 0;
+    for result in &report.results {
+        let Formula::Expanded(formula) = &result.formula else {
+            continue;
+        };
+        let side = |list: &[Polynomial]| Polynomial::from_coefficients(Symbol::S, list);
+        let (above, below) = (side(&formula.numerator), side(&formula.denominator));
+        if above.is_zero() || above.len() + below.len() > 200 {
+            continue;
+        }
+        let context = || format!("seed {seed}\n{}", case.text);
+        let whole = Fraction::new(above, below, &budget).expect("no budget");
+        let designer = result.forms.designer.as_ref();
+        let designer = designer.unwrap_or_else(|| panic!("no form: {}", context()));
+        let value = designer.value(&budget).expect("no budget");
+        assert_eq!(value, whole, "{}", context());
+        let normalised = result.forms.normalised.as_ref().expect("a short formula");
+        let first = formula.denominator.iter().find(|it| !it.is_zero());
+        let first = first.expect("a denominator");
+        for (forms, coefficients) in [
+            (&normalised.numerator, &formula.numerator),
+            (&normalised.denominator, &formula.denominator),
+        ] {
+            for (form, coefficient) in forms.iter().zip(coefficients) {
+                let ratio = Fraction::new(coefficient.clone(), first.clone(), &budget);
+                assert_eq!(form.value(&budget), ratio, "{}", context());
+            }
+        }
+        count += 1;
+    }
+    count
+}
+
+#[test]
+fn every_form_that_is_shown_is_equal_to_the_quotient_of_polynomials() {
+    let trials = setting("CUTLOOP_TRIALS", 150);
+    let first = setting("CUTLOOP_SEED", 1);
+    let found: usize = (first..first + trials).map(forms).sum();
+    assert!(found * 4 > trials as usize, "only {found} forms");
 }

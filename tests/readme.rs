@@ -17,6 +17,7 @@ fn shows_true_answers() {
     let refuted = "in -Vs- ground; in -R1- out -C1- ground; derive H = voltage(out)/Vs; claim H = 1/(1 - s*R1*C1)";
     for arguments in [
         &["formula", "--of", "H", "examples/antialias_filter.cutloop"][..],
+        &["formula", "--of", "Zo", "examples/bulk_and_ceramic.cutloop"],
         &["order", "--of", "H", "examples/half_supply.cutloop"],
         &["audit", "--of", "H", "examples/monitored_sensor.cutloop"],
         &["audit", "--of", "H", "examples/probe_divider.cutloop"],

@@ -8,6 +8,7 @@ use crate::analysis::claim::Evidence;
 use crate::analysis::couplings::Couplings;
 use crate::analysis::drops::{drops, undecided};
 use crate::analysis::effect;
+use crate::analysis::form::{Forms, forms};
 use crate::analysis::functions;
 use crate::analysis::knowledge::Knowledge;
 use crate::analysis::nest::nested;
@@ -133,10 +134,17 @@ impl Run<'_> {
         } else {
             Vec::new()
         };
-        let results = reports
+        let mut results: Vec<FunctionReport> = reports
             .into_iter()
             .filter(|report| functions::is_wanted(&report.name, wanted))
             .collect();
+        if wanted.forms {
+            for report in &mut results {
+                if let Formula::Expanded(expanded) = &report.formula {
+                    report.forms = forms(network, expanded);
+                }
+            }
+        }
         Ok(Report {
             order: self.order.clone(),
             results,
@@ -161,6 +169,7 @@ impl Run<'_> {
                 numerator: vec![Polynomial::zero()],
                 denominator: vec![Polynomial::one()],
             }),
+            forms: Forms::default(),
             order: degrees.order,
             numerator_order: degrees.numerator,
             network: Some(degrees.network),
@@ -217,6 +226,7 @@ impl Run<'_> {
             name: question.name.clone(),
             question: index,
             formula: over(Exceeded::Terms(self.setting.budget.limits().terms)),
+            forms: Forms::default(),
             order: 0,
             numerator_order: 0,
             network: None,

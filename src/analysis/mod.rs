@@ -12,6 +12,7 @@ mod diagram;
 mod drops;
 mod effect;
 mod equations;
+pub mod form;
 mod functions;
 mod hidden;
 mod knowledge;

@@ -1,6 +1,7 @@
 //! All exact findings, typed. Renderers read these and nothing else of the room.
 
 use crate::algebra::{Integer, Polynomial, Rational, Symbol};
+use crate::analysis::form::Forms;
 use crate::budget::Exceeded;
 use crate::diagnostic::Diagnostic;
 use crate::network::{CancellationClass, ElementId, RelationId};
@@ -101,6 +102,8 @@ pub struct FunctionReport {
     pub question: usize,
     /// The function itself.
     pub formula: Formula,
+    /// The same as a designer writes it; empty where formulas were not asked for.
+    pub forms: Forms,
     /// Degree of the cancelled denominator.
     pub order: u32,
     /// Degree of the cancelled numerator.
@@ -263,6 +266,8 @@ pub struct Wanted {
     pub functions: Vec<String>,
     /// Formulas (else degrees alone).
     pub formulas: bool,
+    /// Formulas as a designer writes them, too.
+    pub forms: bool,
     /// Claims.
     pub claims: bool,
     /// Cancellations with class and cause.

@@ -40,7 +40,7 @@ pub enum Command {
     Order(One),
     /// Write each derived function in closed form, cancelled
     #[command(after_help = "Example:\n  cutloop formula filter.cutloop --format latex --set N=4")]
-    Formula(One),
+    Formula(Forms),
     /// Show every pole-zero cancellation: its class, its cause, its proof
     #[command(after_help = "Example:\n  cutloop audit filter.cutloop --format json")]
     Audit(One),
@@ -69,6 +69,30 @@ pub struct One {
     /// What all commands share.
     #[command(flatten)]
     pub options: Options,
+}
+
+/// Arguments of `formula`.
+#[derive(Debug, Args)]
+pub struct Forms {
+    /// What is shown of a function: coefficients, normalised, designer or nested
+    #[arg(long, value_enum, default_value_t = FormName::Designer, hide_possible_values = true)]
+    pub form: FormName,
+    /// File and options.
+    #[command(flatten)]
+    pub one: One,
+}
+
+/// Form of a function.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum FormName {
+    /// Polynomials in s
+    Coefficients,
+    /// Constant coefficient one
+    Normalised,
+    /// Gain, time constants, frequencies and qualities
+    Designer,
+    /// Common symbols taken out, shared sums named
+    Nested,
 }
 
 /// Options that all commands share.

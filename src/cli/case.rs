@@ -11,7 +11,7 @@ use crate::cli::input::{Origin, used};
 use crate::diagnostic::{Diagnostic, Severity};
 use crate::language::{self, ReadOptions};
 use crate::network::Network;
-use crate::render::{Answer, Detail};
+use crate::render::{Answer, Detail, FormStyle};
 use crate::source::{SourceId, Sources};
 
 /// A text with all that was found about it.
@@ -103,6 +103,7 @@ impl Case {
             report: &solved.report,
             warnings: &self.read,
             detail,
+            style: FormStyle::default(),
         })
     }
 

@@ -19,6 +19,20 @@ pub enum Detail {
     Audit,
 }
 
+/// Which form of a function is shown.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum FormStyle {
+    /// Polynomials in s, nothing else.
+    Coefficients,
+    /// Coefficients divided by the first of the denominator, each as short as it can be.
+    Normalised,
+    /// Polynomials in s as far as they fit, and the same in gain, time constants and frequencies.
+    #[default]
+    Designer,
+    /// Coefficients with common symbols taken out and shared sums named.
+    Nested,
+}
+
 /// A network with its report, ready to be written.
 #[derive(Clone, Copy, Debug)]
 pub struct Answer<'a> {
@@ -34,6 +48,8 @@ pub struct Answer<'a> {
     pub warnings: &'a [Diagnostic],
     /// Which findings are shown.
     pub detail: Detail,
+    /// Which form of a function is shown.
+    pub style: FormStyle,
 }
 
 impl<'a> Answer<'a> {

@@ -1,7 +1,9 @@
 //! How much of a formula is written in place, and names for coefficients where it is long.
 
 use crate::algebra::Polynomial;
+use crate::analysis::form::{Form, Normalised};
 use crate::analysis::report::Expanded;
+use crate::render::form;
 use crate::render::math::{self, Math};
 use crate::render::names::Names;
 use crate::render::nest;
@@ -63,11 +65,45 @@ pub struct NamedForm {
     pub definitions: Vec<Definition>,
 }
 
-/// Gives names to all coefficients that are not numbers.
+/// The quotient with a first coefficient of one below, each other coefficient by a name.
 #[must_use]
-pub fn named(formula: &Expanded, names: &Names<'_>) -> NamedForm {
-    let (above, below) = letters(formula, names);
-    let nested = manner(formula) == Manner::Nested;
+pub fn normalised(form: &Normalised, names: &Names<'_>) -> NamedForm {
+    let powers = form.numerator.len().max(form.denominator.len());
+    let (above, below) = letters(powers, names);
+    let mut definitions = Vec::new();
+    let mut side = |coefficients: &[Form], letter: &str| {
+        let parts = (0..).zip(coefficients).filter(|(_, it)| !it.is_zero());
+        Math::sum(parts.map(|(power, coefficient)| {
+            let value = form::math(coefficient, names);
+            let factor = if matches!(coefficient, Form::Number(_)) {
+                value
+            } else {
+                let name = format!("{letter}{power}");
+                let factor = Math::name(&name);
+                definitions.push(Definition {
+                    name,
+                    value,
+                    terms: 0,
+                });
+                factor
+            };
+            Math::product([factor, Math::name("s").power(power)])
+        }))
+    };
+    let numerator = side(&form.numerator, above);
+    let denominator = side(&form.denominator, below);
+    NamedForm {
+        numerator,
+        denominator,
+        definitions,
+    }
+}
+
+/// Gives names to all coefficients that are not numbers; `nested` with common symbols taken out.
+#[must_use]
+pub fn named(formula: &Expanded, names: &Names<'_>, nested: bool) -> NamedForm {
+    let powers = formula.numerator.len().max(formula.denominator.len());
+    let (above, below) = letters(powers, names);
     let mut definitions = Vec::new();
     let mut side = |coefficients: &[Polynomial], letter: &str| {
         let parts = coefficients.iter().enumerate();
@@ -132,9 +168,8 @@ fn define(name: String, value: &Polynomial, nested: bool, names: &Names<'_>) -> 
 }
 
 /// Letters whose numbered forms are no names of the network.
-fn letters(formula: &Expanded, names: &Names<'_>) -> (&'static str, &'static str) {
+fn letters(powers: usize, names: &Names<'_>) -> (&'static str, &'static str) {
     const PAIRS: [(&str, &str); 5] = [("a", "b"), ("n", "d"), ("p", "q"), ("α", "β"), ("a_", "b_")];
-    let powers = formula.numerator.len().max(formula.denominator.len());
     let free = |letter: &str| (0..powers).all(|power| !names.is_taken(&format!("{letter}{power}")));
     let found = PAIRS
         .into_iter()

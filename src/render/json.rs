@@ -3,6 +3,7 @@
 use serde_json::{Map, Value, json};
 
 use crate::algebra::Polynomial;
+use crate::analysis::form::{Form, Forms, Limit, Section, Shape};
 use crate::analysis::report::{
     Cancellation, ClaimReport, Drop, Expanded, Finding, Formula, FunctionReport, Nested,
     NetworkOrder, Verdict,
@@ -10,6 +11,7 @@ use crate::analysis::report::{
 use crate::diagnostic::Diagnostic;
 use crate::network::CancellationClass;
 use crate::render::answer::{Answer, Detail};
+use crate::render::form;
 use crate::render::linear::MACHINE;
 use crate::render::math::{self, Math};
 use crate::render::names::{FrequencyPlace, Names};
@@ -118,6 +120,7 @@ fn result(answer: &Answer<'_>, result: &FunctionReport) -> Value {
     object.insert("asks".into(), json!(answer.question(result).text));
     if answer.detail != Detail::Order {
         insert_formula(&mut object, &result.formula, &names);
+        insert_forms(&mut object, &result.forms, &names);
     }
     insert_degrees(&mut object, answer, result, &names);
     if answer.detail == Detail::Audit
@@ -157,6 +160,62 @@ fn insert_formula(object: &mut Object, formula: &Formula, names: &Names<'_>) {
             object.insert("over_budget".into(), json!(sentence::over_budget(exceeded)));
         }
     }
+}
+
+/// Proven forms: as a designer writes them, and with a first coefficient of one below.
+fn insert_forms(object: &mut Object, forms: &Forms, names: &Names<'_>) {
+    let spelled = |it: &Form| MACHINE.spell(&form::math(it, names));
+    let list = |side: &[Form]| -> Vec<String> { side.iter().map(spelled).collect() };
+    if let Some(designer) = &forms.designer {
+        let side = |sections: &[Section]| -> Vec<Value> {
+            sections.iter().map(|it| section(it, names)).collect()
+        };
+        let value = json!({
+            "gain": spelled(&designer.gain),
+            "power_of_s": designer.power,
+            "numerator": side(&designer.above),
+            "denominator": side(&designer.below),
+        });
+        object.insert("designer".into(), value);
+    }
+    if let Some(normalised) = &forms.normalised {
+        let value = json!({
+            "numerator": list(&normalised.numerator),
+            "denominator": list(&normalised.denominator),
+        });
+        object.insert("normalised".into(), value);
+    }
+    for (key, limit) in [("dc", &forms.dc), ("hf", &forms.hf)] {
+        let text = match limit {
+            Some(Limit::Value(value)) => spelled(value),
+            Some(Limit::Infinite) => "infinite".to_owned(),
+            None => continue,
+        };
+        object.insert(key.into(), json!(text));
+    }
+}
+
+/// A section; roots are spelled `sqrt(…)`.
+fn section(section: &Section, names: &Names<'_>) -> Value {
+    let spelled = |it: &Form| MACHINE.spell(&form::math(it, names));
+    let mut value = match &section.shape {
+        Shape::First { tau } => json!({ "form": "1 + s*tau", "tau": spelled(tau) }),
+        Shape::Second { omega, quality } => match quality {
+            Some(quality) => json!({
+                "form": "1 + s/(Q*w0) + s^2/w0^2", "w0": spelled(omega), "Q": spelled(quality),
+            }),
+            None => json!({ "form": "1 + s^2/w0^2", "w0": spelled(omega) }),
+        },
+        Shape::Series(list) => {
+            let list: Vec<String> = list.iter().map(spelled).collect();
+            json!({ "form": "1 + c1*s + c2*s^2 + …", "c": list })
+        }
+        Shape::Rise => json!({ "form": "s*tau" }),
+        Shape::Damping => json!({ "form": "s/(Q*w0)" }),
+        Shape::Square => json!({ "form": "s^2/w0^2" }),
+    };
+    value["power"] = json!(section.power);
+    value
 }
 
 fn nested(form: &Nested, names: &Names<'_>) -> Value {

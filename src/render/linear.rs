@@ -96,7 +96,11 @@ impl Style {
             }
             Math::Root(inner) => {
                 text.push_str(self.root);
+                let bracketed =
+                    self.root.is_ascii() && !inner.is_grouped(Within::Base, Bars::Slash);
+                text.push_str(if bracketed { "(" } else { "" });
                 self.write(inner, Within::Base, text);
+                text.push_str(if bracketed { ")" } else { "" });
             }
             Math::Negative(inner) => {
                 text.push_str(self.sign);

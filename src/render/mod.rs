@@ -5,21 +5,19 @@
 
 pub mod answer;
 pub mod coefficients;
+pub mod designer;
 #[cfg(test)]
 mod exactness;
-pub mod factored;
+pub mod form;
 pub mod json;
 pub mod latex;
 pub mod ledger;
-pub mod limits;
 pub mod linear;
 pub mod math;
 pub mod names;
 pub mod nest;
-pub mod parallel;
 pub mod sentence;
 pub mod share;
-pub mod standard;
 pub mod text;
 
-pub use answer::{Answer, Detail};
+pub use answer::{Answer, Detail, FormStyle};

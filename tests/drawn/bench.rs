@@ -1,13 +1,14 @@
 //! A network and a report put together by hand.
 
 use cutloop::algebra::{Fraction, Polynomial, Symbol};
+use cutloop::analysis::form::{Forms, forms};
 use cutloop::analysis::report::{Expanded, Formula, FunctionReport, NetworkOrder, Report};
 use cutloop::network::{
     Ask, Assertion, Claim, Combination, Dimension, Drive, DriveId, Element, ElementId, Kind,
     Network, NetworkBuilder, NodeId, Origin, Port, Quantity, Question, Relation, RelationId, Sign,
     Source, SymbolFacts, Value,
 };
-use cutloop::render::{Answer, Detail};
+use cutloop::render::{Answer, Detail, FormStyle};
 use cutloop::source::{SourceId, Sources, Span};
 
 /// Everything an answer borrows.
@@ -27,6 +28,7 @@ impl Bench {
             report: &self.report,
             warnings: &[],
             detail,
+            style: FormStyle::default(),
         }
     }
 }
@@ -191,11 +193,17 @@ impl Maker {
         })
     }
 
-    pub(crate) fn bench(self, report: Report) -> Bench {
+    pub(crate) fn bench(self, mut report: Report) -> Bench {
+        let network = self.builder.finish();
+        for result in &mut report.results {
+            if let Formula::Expanded(formula) = &result.formula {
+                result.forms = forms(&network, formula);
+            }
+        }
         Bench {
             sources: self.sources,
             source: self.source,
-            network: self.builder.finish(),
+            network,
             report,
         }
     }
@@ -207,6 +215,7 @@ pub(crate) fn function(name: &str, formula: Formula, order: u32, network: u32) -
         name: name.to_owned(),
         question: 0,
         formula,
+        forms: Forms::default(),
         order,
         numerator_order: 0,
         network: Some(network),

@@ -5,7 +5,7 @@ use serde_json::Value;
 use crate::analysis::report::{ClaimReport, Verdict};
 use crate::cli::args::{Check, Format};
 use crate::cli::case::Case;
-use crate::cli::command::{explain_all, in_words, json, question, wanted};
+use crate::cli::command::{explain_all, in_words, json, question, shown, wanted};
 use crate::cli::exit::Exit;
 use crate::cli::input::Origin;
 use crate::cli::output::Streams;
@@ -37,7 +37,7 @@ pub(super) fn run(arguments: &Check, streams: &mut Streams<'_>) -> Exit {
         match options.format {
             Format::Json => values.push(json::of_case(&case, Detail::Claims, several)),
             format => {
-                let text = in_words(&case, Detail::Claims, format, streams.terminal);
+                let text = in_words(&case, shown(Detail::Claims), format, streams.terminal);
                 exit = streams.answer(&under_heading(&case.name, &text, several), exit);
             }
         }

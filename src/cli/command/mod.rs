@@ -5,22 +5,52 @@ mod json;
 mod one;
 
 use crate::analysis::report::Wanted;
-use crate::cli::args::{Command, Format};
+use crate::cli::args::{Command, FormName, Format};
 use crate::cli::case::{Case, Question};
 use crate::cli::exit::Exit;
 use crate::cli::explain::explain;
 use crate::cli::output::{Streams, Terminal};
 use crate::render::sentence::counted;
 use crate::render::text::Page;
-use crate::render::{Detail, latex, text};
+use crate::render::{Answer, Detail, FormStyle, latex, text};
 
 /// Runs a command.
 pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
     match command {
         Command::Check(arguments) => check::run(arguments, streams),
-        Command::Order(arguments) => one::run(arguments, Detail::Order, streams),
-        Command::Formula(arguments) => one::run(arguments, Detail::Formula, streams),
-        Command::Audit(arguments) => one::run(arguments, Detail::Audit, streams),
+        Command::Order(arguments) => one::run(arguments, shown(Detail::Order), streams),
+        Command::Formula(arguments) => {
+            let style = style(arguments.form);
+            let shown = Shown {
+                style,
+                ..shown(Detail::Formula)
+            };
+            one::run(&arguments.one, shown, streams)
+        }
+        Command::Audit(arguments) => one::run(arguments, shown(Detail::Audit), streams),
+    }
+}
+
+/// What is shown, and how.
+#[derive(Clone, Copy)]
+struct Shown {
+    detail: Detail,
+    style: FormStyle,
+}
+
+fn shown(detail: Detail) -> Shown {
+    Shown {
+        detail,
+        style: FormStyle::default(),
+    }
+}
+
+fn style(form: FormName) -> FormStyle {
+    match form {
+        FormName::Coefficients => FormStyle::Coefficients,
+        FormName::Normalised => FormStyle::Normalised,
+        FormName::Designer => FormStyle::Designer,
+        FormName::Nested => FormStyle::Nested,
     }
 }
 
@@ -43,9 +73,13 @@ fn explain_all(case: &Case, streams: &mut Streams<'_>) {
 }
 
 /// The answer in words; empty where there is none.
-fn in_words(case: &Case, detail: Detail, format: Format, terminal: Terminal) -> String {
-    let Some(answer) = case.answer(detail) else {
+fn in_words(case: &Case, shown: Shown, format: Format, terminal: Terminal) -> String {
+    let Some(answer) = case.answer(shown.detail) else {
         return String::new();
+    };
+    let answer = Answer {
+        style: shown.style,
+        ..answer
     };
     match format {
         Format::Latex => latex::answer(&answer),
@@ -66,6 +100,7 @@ fn wanted(detail: Detail, format: Format, of: &[String]) -> Wanted {
     Wanted {
         functions: of.to_vec(),
         formulas: matches!(detail, Detail::Formula | Detail::Audit),
+        forms: matches!(detail, Detail::Formula | Detail::Audit),
         claims: detail == Detail::Claims,
         cancellations: match detail {
             Detail::Audit => true,

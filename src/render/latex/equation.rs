@@ -1,65 +1,90 @@
 //! Derived functions as displayed equations.
 
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
-use crate::render::answer::Answer;
+use crate::render::answer::{Answer, FormStyle};
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
-use crate::render::factored::factored;
+use crate::render::designer::{StandardForm, standard};
 use crate::render::latex::escape::{escape, name};
 use crate::render::latex::spell::{LINE, lines, spell, width};
 use crate::render::math::{self, Bars, Math, Within};
 use crate::render::names::{FrequencyPlace, Names};
 use crate::render::sentence;
-use crate::render::standard::{StandardForm, standard};
 
 /// The equation of one function, or the sentence why there is none.
 pub(super) fn function(answer: &Answer<'_>, result: &FunctionReport) -> String {
     let names = answer.names(FrequencyPlace::First);
     match &result.formula {
-        Formula::Expanded(formula) => expanded(&result.name, formula, &names),
+        Formula::Expanded(formula) => expanded(result, formula, &names, answer.style),
         Formula::Nested(form) => nested(&result.name, form, &names),
         Formula::OverBudget(exceeded) => format!("{}\n", escape(&sentence::over_budget(exceeded))),
     }
 }
 
-fn expanded(function: &str, formula: &Expanded, names: &Names<'_>) -> String {
-    if coefficients::manner(formula) != Manner::InPlace {
-        return with_definitions(function, &coefficients::named(formula, names));
+fn expanded(
+    result: &FunctionReport,
+    formula: &Expanded,
+    names: &Names<'_>,
+    style: FormStyle,
+) -> String {
+    let function = &result.name;
+    let left = left_side(function, formula);
+    let manner = coefficients::manner(formula);
+    let form = (style == FormStyle::Designer)
+        .then(|| result.forms.designer.as_ref().map(|it| standard(it, names)))
+        .flatten();
+    match (style, &result.forms.normalised) {
+        (FormStyle::Normalised, Some(form)) => {
+            return with_definitions(&left, &coefficients::normalised(form, names));
+        }
+        (FormStyle::Nested, _) => {
+            return with_definitions(&left, &coefficients::named(formula, names, true));
+        }
+        _ if manner == Manner::InPlace => {}
+        _ => {
+            return match form {
+                Some(form) => in_several_forms(&left, Vec::new(), Some(&form)),
+                None => {
+                    let nested = manner == Manner::Nested;
+                    with_definitions(&left, &coefficients::named(formula, names, nested))
+                }
+            };
+        }
     }
     let above = math::factored_series(&formula.numerator, names);
     let below = math::factored_series(&formula.denominator, names);
-    let left = left_side(function, formula);
     let room = LINE - 60;
     if width(&above) <= room && width(&below) <= room {
         let right = spell(&Math::quotient(above, below));
-        return match factored(formula, names) {
-            Some(sections) if width(&sections) <= room => {
-                in_several_forms(&left, vec![right, spell(&sections)], None)
-            }
-            Some(_) => in_several_forms(&left, vec![right], None),
-            None => in_several_forms(&left, vec![right], standard(formula, names).as_ref()),
-        };
+        return in_several_forms(&left, vec![right], form.as_ref());
     }
-    let definitions = [("N", above), ("D", below)].map(|(name, value)| Side {
-        left: format!("{name}(s)"),
-        value,
-    });
-    aligned(&format!("{left} &= \\frac{{N(s)}}{{D(s)}}"), &definitions)
+    let mut sides: Vec<Side> = [("N", above), ("D", below)]
+        .into_iter()
+        .map(|(name, value)| Side {
+            left: format!("{name}(s)"),
+            value,
+        })
+        .collect();
+    let mut rights = vec!["\\frac{N(s)}{D(s)}".to_owned()];
+    if let Some(form) = &form {
+        rights.push(in_designers_terms(form));
+        sides.extend(form.definitions.iter().map(definition));
+    }
+    aligned(
+        &format!("{left} &= {}", rights.join(" \\\\\n  &= ")),
+        &sides,
+    )
 }
 
 /// The fraction, the same in other forms, and what the names of the last one stand for.
 fn in_several_forms(left: &str, mut rights: Vec<String>, form: Option<&StandardForm>) -> String {
-    rights.extend(form.map(in_designers_terms));
-    if let [only] = rights.as_slice() {
+    let other = form.map(in_designers_terms);
+    rights.extend(other.filter(|it| rights.first() != Some(it)));
+    let definitions = form.iter().flat_map(|form| &form.definitions);
+    let sides: Vec<Side> = definitions.map(definition).collect();
+    if let ([only], []) = (rights.as_slice(), sides.as_slice()) {
         return format!("\\begin{{equation*}}\n  {left} = {only}\n\\end{{equation*}}\n");
     }
     let first = format!("{left} &= {}", rights.join(" \\\\\n  &= "));
-    let definitions = form.iter().flat_map(|form| &form.definitions);
-    let sides: Vec<Side> = definitions
-        .map(|(own, value)| Side {
-            left: name(own),
-            value: value.clone(),
-        })
-        .collect();
     aligned(&first, &sides)
 }
 
@@ -71,8 +96,13 @@ fn in_designers_terms(form: &StandardForm) -> String {
         let (open, close) = if group { ("(", ")") } else { ("", "") };
         format!("{open}{}{close} \\cdot ", spell(gain))
     });
-    let fraction = spell(&form.fraction);
-    format!("{sign}{}{fraction}", gain.unwrap_or_default())
+    match (&form.gain, &form.fraction) {
+        (Some(gain), None) => format!("{sign}{}", spell(gain)),
+        (_, fraction) => {
+            let fraction = fraction.as_ref().map_or("1".to_owned(), spell);
+            format!("{sign}{}{fraction}", gain.unwrap_or_default())
+        }
+    }
 }
 
 fn left_side(function: &str, formula: &Expanded) -> String {
@@ -87,13 +117,12 @@ struct Side {
     value: Math,
 }
 
-fn with_definitions(function: &str, form: &NamedForm) -> String {
-    let left = name(function);
+fn with_definitions(left: &str, form: &NamedForm) -> String {
     let definitions = form.definitions.iter().map(definition);
     let fits = |side: &Math| width(side) <= LINE - 60;
     if fits(&form.numerator) && fits(&form.denominator) {
         let quotient = Math::quotient(form.numerator.clone(), form.denominator.clone());
-        let first = format!("{left}(s) &= {}", spell(&quotient));
+        let first = format!("{left} &= {}", spell(&quotient));
         return aligned(&first, &definitions.collect::<Vec<_>>());
     }
     let sides = [("N", &form.numerator), ("D", &form.denominator)].map(|(own, value)| Side {
@@ -101,7 +130,7 @@ fn with_definitions(function: &str, form: &NamedForm) -> String {
         value: value.clone(),
     });
     let sides: Vec<Side> = sides.into_iter().chain(definitions).collect();
-    aligned(&format!("{left}(s) &= \\frac{{N(s)}}{{D(s)}}"), &sides)
+    aligned(&format!("{left} &= \\frac{{N(s)}}{{D(s)}}"), &sides)
 }
 
 fn definition(definition: &Definition) -> Side {

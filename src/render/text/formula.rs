@@ -1,17 +1,17 @@
 //! Derived functions as fractions.
 
 use crate::algebra::{Polynomial, Symbol};
+use crate::analysis::form::{Forms, Limit};
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
-use crate::render::answer::Answer;
+use crate::render::answer::{Answer, FormStyle};
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
-use crate::render::factored::factored;
+use crate::render::designer::{self, StandardForm, standard};
+use crate::render::form;
 use crate::render::ledger;
-use crate::render::limits::{self, Limit};
 use crate::render::linear::READING;
 use crate::render::math::{self, Math, Within};
 use crate::render::names::{FrequencyPlace, Names};
 use crate::render::sentence;
-use crate::render::standard::{StandardForm, standard};
 use crate::render::text::Page;
 use crate::render::text::block::{Block, columns};
 use crate::render::text::fill;
@@ -28,7 +28,9 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
     let mut text = order::heading(answer, result, page);
     text.push('\n');
     match &result.formula {
-        Formula::Expanded(formula) => text.push_str(&expanded(&result.name, formula, &names, page)),
+        Formula::Expanded(formula) => {
+            text.push_str(&expanded(result, formula, &names, page, answer.style))
+        }
         Formula::Nested(form) => text.push_str(&nested(&result.name, form, &names, page)),
         Formula::OverBudget(exceeded) => {
             let sentence = sentence::over_budget(exceeded);
@@ -57,20 +59,62 @@ fn footer(result: &FunctionReport, page: &Page) -> String {
     text
 }
 
-fn expanded(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
-    match coefficients::manner(formula) {
-        Manner::InPlace => in_place(name, formula, names, page),
-        Manner::Named => named(name, &coefficients::named(formula, names), page),
-        Manner::Nested => {
-            let (above, below) = coefficients::term_counts(formula);
-            let mut text = named(name, &coefficients::named(formula, names), page);
-            let terms = expanded_terms(&above.to_string(), &below.to_string());
-            let note = format!("shared parts are named, common symbols taken out; {terms}");
+fn expanded(
+    result: &FunctionReport,
+    formula: &Expanded,
+    names: &Names<'_>,
+    page: &Page,
+    style: FormStyle,
+) -> String {
+    let name = &result.name;
+    let forms = &result.forms;
+    let depends_on_s = formula.numerator.len() > 1 || formula.denominator.len() > 1;
+    let left = left_side(name, depends_on_s);
+    let nested = coefficients::manner(formula) == Manner::Nested;
+    let mut text = match (style, &forms.normalised) {
+        (FormStyle::Normalised, Some(form)) if depends_on_s => {
+            named(&left, &coefficients::normalised(form, names), page)
+        }
+        (FormStyle::Nested, _) => named(&left, &coefficients::named(formula, names, true), page),
+        _ => match coefficients::manner(formula) {
+            Manner::InPlace => in_place(&left, formula, names, page),
+            Manner::Named if style == FormStyle::Designer && forms.designer.is_some() => {
+                String::new()
+            }
+            Manner::Named | Manner::Nested => {
+                named(&left, &coefficients::named(formula, names, nested), page)
+            }
+        },
+    };
+    if nested {
+        let (above, below) = coefficients::term_counts(formula);
+        let terms = expanded_terms(&above.to_string(), &below.to_string());
+        let note = format!("shared parts are named, common symbols taken out; {terms}");
+        text.push('\n');
+        text.push_str(&remark(&note, page));
+    }
+    if style == FormStyle::Designer
+        && let Some(designer) = &forms.designer
+        && (text.is_empty() || designer::says_more(formula, designer, names))
+    {
+        let form = standard(designer, names);
+        let equals = format!("{}=  ", " ".repeat(columns(&left) - 3));
+        let (gap, lead) = if text.is_empty() {
+            ("", &left)
+        } else {
+            ("\n", &equals)
+        };
+        text.push_str(gap);
+        text.push_str(&in_designers_terms(&form, lead, page));
+    }
+    if depends_on_s && !nested {
+        let limits = frequency_limits(name, forms, names, page);
+        if !limits.is_empty() {
             text.push('\n');
-            text.push_str(&remark(&note, page));
-            text
+            text.push_str(&limits);
         }
     }
+    text
 }
 
 /// How long a fraction would be.
@@ -88,12 +132,10 @@ fn left_side(name: &str, depends_on_s: bool) -> String {
     format!("{name}{argument}  =  ")
 }
 
-fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
-    let depends_on_s = formula.numerator.len() > 1 || formula.denominator.len() > 1;
-    let left = left_side(name, depends_on_s);
+fn in_place(left: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
     let width = page
         .width
-        .saturating_sub(INDENT + columns(&left) + 2)
+        .saturating_sub(INDENT + columns(left) + 2)
         .max(20);
     let above = polynomial_lines(&formula.numerator, names, width);
     let is_number = |side: &[Polynomial]| matches!(side, [only] if only.is_constant());
@@ -106,32 +148,18 @@ fn in_place(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> S
         let below = polynomial_lines(&formula.denominator, names, width);
         Block::fraction(&Block::lines(above), &Block::lines(below))
     };
-    let mut text = Block::beside(&[Block::text(left.as_str()), right]).indented(INDENT);
-    if let Some(sections) = factored(formula, names) {
-        text.push('\n');
-        text.push_str(&in_sections(&sections, columns(&left), page));
-    } else if let Some(form) = standard(formula, names) {
-        text.push('\n');
-        text.push_str(&in_designers_terms(&form, columns(&left), page));
-    }
-    if depends_on_s {
-        text.push('\n');
-        text.push_str(&frequency_limits(name, formula, names, page));
-    }
-    text
+    Block::beside(&[Block::text(left), right]).indented(INDENT)
 }
 
 /// `dc(H) = …`, `hf(H) = …`, as a claim would say it.
-fn frequency_limits(name: &str, formula: &Expanded, names: &Names<'_>, page: &Page) -> String {
+fn frequency_limits(name: &str, forms: &Forms, names: &Names<'_>, page: &Page) -> String {
     let mut lines = Vec::new();
-    for (word, limit) in [
-        ("dc", limits::dc(formula, names)),
-        ("hf", limits::hf(formula, names)),
-    ] {
+    for (word, limit) in [("dc", &forms.dc), ("hf", &forms.hf)] {
         let first = format!("  {word}({name}) = ");
         match limit {
             Some(Limit::Value(value)) => {
                 let rest = " ".repeat(columns(&first) - 2);
+                let value = form::math(value, names);
                 push_hanging(&mut lines, &first, &rest, &value, page.width);
             }
             Some(Limit::Infinite) => lines.push(format!("{first}infinite")),
@@ -141,41 +169,57 @@ fn frequency_limits(name: &str, formula: &Expanded, names: &Names<'_>, page: &Pa
     lines.iter().map(|line| format!("{line}\n")).collect()
 }
 
-/// The same as a product of independent sections; nothing where it is too wide.
-fn in_sections(sections: &Math, left: usize, page: &Page) -> String {
-    let equals = Block::text(format!("{}=  ", " ".repeat(left - 3)));
-    let block = Block::beside(&[equals, Block::math(sections)]);
-    if INDENT + block.width() > page.width {
-        return String::new();
-    }
-    block.indented(INDENT)
-}
-
-/// The same in gain, time constants, frequencies.
-fn in_designers_terms(form: &StandardForm, left: usize, page: &Page) -> String {
+/// The same in gain, time constants, frequencies, behind `left`.
+fn in_designers_terms(form: &StandardForm, left: &str, page: &Page) -> String {
     let sign = if form.negative { "− " } else { "" };
-    let mut blocks = vec![Block::text(format!("{}=  {sign}", " ".repeat(left - 3)))];
+    let lead = Block::text(format!("{left}{sign}"));
+    let mut blocks = vec![lead.clone()];
     if let Some(gain) = &form.gain {
-        blocks.push(Block::within(gain, Within::Product));
+        let within = if form.fraction.is_some() {
+            Within::Product
+        } else {
+            Within::Alone
+        };
+        blocks.push(Block::within(gain, within));
+    }
+    if form.gain.is_some() && form.fraction.is_some() {
         blocks.push(Block::text(" · "));
     }
-    blocks.push(Block::within(&form.fraction, Within::Product));
-    let block = Block::beside(&blocks);
+    let one = Math::Number(1_i64.into());
+    match &form.fraction {
+        Some(fraction) => blocks.push(Block::within(fraction, Within::Product)),
+        None if form.gain.is_none() => blocks.push(Block::math(&one)),
+        None => {}
+    }
+    let mut block = Block::beside(&blocks);
     if INDENT + block.width() > page.width {
-        return String::new();
+        let whole = Math::product(form.gain.iter().chain(&form.fraction).cloned());
+        block = Block::beside(&[lead, wide(&whole, columns(left) + columns(sign), page)]);
     }
     let mut text = block.indented(INDENT);
-    text.push('\n');
-    let widest = form.definitions.iter().map(|(name, _)| columns(name)).max();
-    for (name, value) in &form.definitions {
-        let gap = widest.unwrap_or(0) - columns(name);
-        let first = format!("{}{name} = ", " ".repeat(INDENT + left + gap - 1));
-        let rest = " ".repeat(columns(&first) - 2);
-        let mut lines = Vec::new();
-        push_hanging(&mut lines, &first, &rest, value, page.width);
-        text.extend(lines.iter().map(|line| format!("{line}\n")));
+    if !form.definitions.is_empty() {
+        text.push('\n');
+        text.push_str(&definitions(&form.definitions, columns(left), page));
     }
     text
+}
+
+/// A quotient that needs several lines above or below its bar.
+fn wide(whole: &Math, left: usize, page: &Page) -> Block {
+    let width = page.width.saturating_sub(INDENT + left + 2).max(20);
+    let block = |math: &Math| {
+        let line = READING.spell(math);
+        if columns(&line) <= width {
+            return Block::text(line);
+        }
+        let mut lines = Vec::new();
+        push_hanging(&mut lines, "  ", "", math, width);
+        Block::lines(lines)
+    };
+    match whole {
+        Math::Quotient(above, below) => Block::fraction(&block(above), &block(below)),
+        other => block(other),
+    }
 }
 
 /// On one line where it fits, else one power of s a line, long coefficients broken.
@@ -212,41 +256,37 @@ fn push_hanging(lines: &mut Vec<String>, first: &str, rest: &str, body: &Math, w
     }
 }
 
-fn named(name: &str, form: &NamedForm, page: &Page) -> String {
-    let mut text = quotient_of_sums(&left_side(name, true), form, page);
-    text.push('\n');
-    text.push_str(&definitions(&form.definitions, page));
+fn named(left: &str, form: &NamedForm, page: &Page) -> String {
+    let mut text = quotient_of_sums(left, form, page);
+    if !form.definitions.is_empty() {
+        text.push('\n');
+        text.push_str(&definitions(&form.definitions, 0, page));
+    }
     text
 }
 
 fn quotient_of_sums(left: &str, form: &NamedForm, page: &Page) -> String {
-    let width = page
-        .width
-        .saturating_sub(INDENT + columns(left) + 2)
-        .max(20);
-    let block = |math: &Math| {
-        let line = READING.spell(math);
-        if columns(&line) <= width {
-            return Block::text(line);
-        }
-        let mut lines = Vec::new();
-        push_hanging(&mut lines, "  ", "", math, width);
-        Block::lines(lines)
-    };
-    let above = block(&form.numerator);
-    let right = match &form.denominator {
-        Math::Number(one) if one.is_one() => above,
-        below => Block::fraction(&above, &block(below)),
-    };
+    let whole = Math::quotient(form.numerator.clone(), form.denominator.clone());
+    let right = wide(&whole, columns(left), page);
     Block::beside(&[Block::text(left), right]).indented(INDENT)
 }
 
-/// `b1 = …` one below the other, the equals signs in one column.
-fn definitions(list: &[Definition], page: &Page) -> String {
+/// `b1 = …` one below the other, the equals signs in one column; below a formula where all fit there.
+fn definitions(list: &[Definition], left: usize, page: &Page) -> String {
     let widest = list.iter().map(|it| columns(&it.name)).max().unwrap_or(0);
+    let value_column = |left: usize| INDENT + left + widest + 3;
+    let fits = |left: usize| {
+        let widths = list.iter().map(|it| columns(&READING.spell(&it.value)));
+        widths.max().unwrap_or(0) + value_column(left) <= page.width
+    };
+    let left = if fits(left.saturating_sub(1)) {
+        left.saturating_sub(1)
+    } else {
+        0
+    };
     let mut lines = Vec::new();
     for definition in list {
-        let gap = " ".repeat(widest - columns(&definition.name));
+        let gap = " ".repeat(left + widest - columns(&definition.name));
         let first = format!("  {gap}{} = ", definition.name);
         let rest = " ".repeat(columns(&first) - 2);
         push_hanging(&mut lines, &first, &rest, &definition.value, page.width);
@@ -274,7 +314,7 @@ fn nested(name: &str, form: &Nested, names: &Names<'_>, page: &Page) -> String {
             .map(definition)
             .collect(),
     };
-    let mut text = named(name, &named_form, page);
+    let mut text = named(&left_side(name, true), &named_form, page);
     let terms = expanded_terms(&form.terms.0.to_string(), &form.terms.1.to_string());
     let mut notes = vec![format!("shared parts are named; {terms}")];
     if form.common_degree > 0 {
