@@ -4,6 +4,7 @@
 #![deny(clippy::float_arithmetic)]
 
 pub(crate) mod choice;
+pub mod elimination;
 pub mod factor;
 pub mod fraction;
 pub mod gcd;

@@ -203,7 +203,11 @@ impl Run<'_> {
             }
             Err(_) => report.cancellations = whole(&self.setting, self.table, solved),
         }
-        report.no_effect = effect::without_effect(network, index, &report, self.setting.couplings);
+        // A part of a factor that cancels has its place there.
+        if report.cancellations.is_some() || report.hidden == Some(0) {
+            report.no_effect =
+                effect::without_effect(network, index, &report, self.setting.couplings);
+        }
         Ok(report)
     }
 

@@ -10,6 +10,10 @@ use crate::analysis::setup::{Frame, Insertion};
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Network, Value};
 
+/// Cost of an order of parts from which on no diagram is begun: a frontier of some 20 nodes in each
+/// graph.
+const HOPELESS: u64 = 1 << 40;
+
 /// A determinant before any value is put in.
 #[derive(Clone, Debug)]
 pub struct Determinant {
@@ -57,7 +61,10 @@ impl Determinant {
         if let Err(singular) = contract(&mut assembly) {
             return Ok(Err(singular));
         }
-        let order = order(&assembly.blocks, assembly.nodes);
+        let (order, cost) = order(&assembly.blocks, assembly.nodes);
+        if cost > HOPELESS {
+            return Err(Exceeded::States(budget.limits().states));
+        }
         let diagram = Diagram::build(&assembly.blocks, &order, assembly.nodes, budget)?;
         Ok(match diagram {
             Some(diagram) => Ok(Self {
@@ -72,16 +79,9 @@ impl Determinant {
         })
     }
 
-    /// The symbols its values are made of.
-    pub(crate) fn symbols(&self) -> Vec<Symbol> {
-        self.slots
-            .iter()
-            .flat_map(|slot| match slot {
-                Slot::Value(Value::Symbol(symbol)) => vec![*symbol],
-                Slot::Value(Value::Number(_)) | Slot::Mutual(_) => Vec::new(),
-                Slot::Polynomial(polynomial) => polynomial.symbols(),
-            })
-            .collect()
+    /// What its weights are made of.
+    pub(crate) fn slots(&self) -> &[Slot] {
+        &self.slots
     }
 
     /// States of the diagram.
@@ -97,7 +97,7 @@ impl Determinant {
     /// # Errors
     /// When the ring's budget is reached.
     pub fn value<R: Ring>(&self, ring: &R, values: &dyn Values<R>) -> Result<R::Element, R::Error> {
-        let slots = self.slot_values(ring, values)?;
+        let slots = slot_values(&self.slots, ring, values)?;
         let s = values.s();
         let mut states = vec![ring.one()];
         for layer in &self.diagram.layers {
@@ -141,22 +141,6 @@ impl Determinant {
         } else {
             value
         })
-    }
-
-    /// Numerator and denominator of every slot.
-    fn slot_values<R: Ring>(&self, ring: &R, values: &dyn Values<R>) -> Result<Slots<R>, R::Error> {
-        self.slots
-            .iter()
-            .map(|slot| match slot {
-                Slot::Value(Value::Symbol(symbol)) => values.symbol(*symbol),
-                Slot::Value(Value::Number(number)) => Ok((
-                    ring.integer(number.numerator()),
-                    ring.integer(number.denominator()),
-                )),
-                Slot::Polynomial(polynomial) => values.polynomial(polynomial),
-                Slot::Mutual(coupling) => values.mutual(*coupling),
-            })
-            .collect()
     }
 
     /// Number of terms of the expanded determinant before like terms are gathered.
@@ -215,7 +199,7 @@ impl Determinant {
         table: &mut SymbolTable,
         definitions: &mut Vec<(Symbol, Polynomial)>,
     ) -> Result<Polynomial, Exceeded> {
-        let slots = self.slot_values(ring, values)?;
+        let slots = slot_values(&self.slots, ring, values)?;
         let s = Polynomial::symbol(Symbol::S);
         let mut states = vec![Polynomial::one()];
         for layer in &self.diagram.layers {
@@ -239,6 +223,38 @@ impl Determinant {
         let value = states.into_iter().next().unwrap_or_default();
         Ok(if self.diagram.negative { -value } else { value })
     }
+}
+
+/// Numerator and denominator of every slot.
+pub(crate) fn slot_values<R: Ring>(
+    slots: &[Slot],
+    ring: &R,
+    values: &dyn Values<R>,
+) -> Result<Slots<R>, R::Error> {
+    slots
+        .iter()
+        .map(|slot| match slot {
+            Slot::Value(Value::Symbol(symbol)) => values.symbol(*symbol),
+            Slot::Value(Value::Number(number)) => Ok((
+                ring.integer(number.numerator()),
+                ring.integer(number.denominator()),
+            )),
+            Slot::Polynomial(polynomial) => values.polynomial(polynomial),
+            Slot::Mutual(coupling) => values.mutual(*coupling),
+        })
+        .collect()
+}
+
+/// The symbols that slots are made of.
+pub(crate) fn slot_symbols(slots: &[Slot]) -> Vec<Symbol> {
+    slots
+        .iter()
+        .flat_map(|slot| match slot {
+            Slot::Value(Value::Symbol(symbol)) => vec![*symbol],
+            Slot::Value(Value::Number(_)) | Slot::Mutual(_) => Vec::new(),
+            Slot::Polynomial(polynomial) => polynomial.symbols(),
+        })
+        .collect()
 }
 
 fn is_one(weight: &Weight) -> bool {

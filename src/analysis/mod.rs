@@ -3,6 +3,7 @@
 mod answer;
 mod assembly;
 mod block;
+mod built;
 mod cancellation;
 mod claim;
 pub mod contraction;
@@ -25,6 +26,7 @@ mod pairing;
 mod point;
 mod relations;
 pub mod report;
+mod sampled;
 pub mod setup;
 pub mod singular;
 mod solve;

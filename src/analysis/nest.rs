@@ -32,6 +32,7 @@ pub(crate) fn nested(
             let Some(determinant) = determinant else {
                 continue;
             };
+            let determinant = determinant.diagram(budget)?;
             if determinant.states() > MAX_DEFINITIONS {
                 return Err(long);
             }

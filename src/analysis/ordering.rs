@@ -124,11 +124,11 @@ const MOVES: usize = 3000;
 /// Proxy cost below which an order is good enough, for each block.
 const CHEAP: u64 = 64;
 
-/// A good order of the blocks.
-pub(crate) fn order(blocks: &[Block], nodes: u32) -> Vec<usize> {
+/// A good order of the blocks with its cost, Σ 2^frontier over the steps.
+pub(crate) fn order(blocks: &[Block], nodes: u32) -> (Vec<usize>, u64) {
     let count = blocks.len();
     if count == 0 {
-        return Vec::new();
+        return (Vec::new(), 0);
     }
     let incidence = Incidence::new(blocks, nodes);
     let starts = if count > 2000 { 2 } else { STARTS.min(count) };
@@ -144,7 +144,7 @@ pub(crate) fn order(blocks: &[Block], nodes: u32) -> Vec<usize> {
     if cost > CHEAP * count as u64 && count <= 400 {
         improve(&incidence, &mut order, &mut cost);
     }
-    order
+    (order, cost)
 }
 
 /// Moves single blocks to other places while that pays.
@@ -197,7 +197,7 @@ mod tests {
         let network = Sketch::of(&list.join(";")).finish();
         let assembly = assemble(&network, &Frame::default(), &Insertion::None);
         let incidence = Incidence::new(&assembly.blocks, assembly.nodes);
-        let found = order(&assembly.blocks, assembly.nodes);
+        let (found, _) = order(&assembly.blocks, assembly.nodes);
         let mut sorted = found.clone();
         sorted.sort_unstable();
         assert_eq!(sorted, (0..assembly.blocks.len()).collect::<Vec<_>>());

@@ -1,12 +1,12 @@
 //! A question as a quotient of determinants, evaluated over any layer of values.
 
 use std::collections::BTreeSet;
-use std::convert::Infallible;
 
 use crate::algebra::univariate::Univariate;
 use crate::algebra::{Polynomial, PolynomialRing, PrimeField, Ring, Symbol, UnivariateRing};
+use crate::analysis::built::Built;
 use crate::analysis::contraction::Singular;
-use crate::analysis::determinant::{Determinant, Values};
+use crate::analysis::determinant::Values;
 use crate::analysis::point::{Choice, Point};
 use crate::analysis::setup::{Frame, Insertion, Response};
 use crate::budget::{Budget, Exceeded};
@@ -23,8 +23,8 @@ pub(crate) struct Pairing {
 /// A difference of determinants times a polynomial. A determinant that is zero whatever the values is
 /// `None`.
 struct Side {
-    plus: Option<Determinant>,
-    minus: Option<Determinant>,
+    plus: Option<Built>,
+    minus: Option<Built>,
     factor: Polynomial,
 }
 
@@ -58,7 +58,7 @@ impl Pairing {
         let Some(frame) = Frame::of(ask, without) else {
             return Ok(None);
         };
-        let build = |insertion: &Insertion| Determinant::build(network, &frame, insertion, budget);
+        let build = |insertion: &Insertion| Built::new(network, &frame, insertion, budget);
         let respond = |combination| {
             let response = Response::new(combination);
             let denominator = response.denominator.clone();
@@ -121,7 +121,7 @@ impl Pairing {
         budget: &Budget,
     ) -> Result<Paired, Exceeded> {
         let frame = Frame::without(without);
-        let built = Determinant::build(network, &frame, &Insertion::None, budget)?;
+        let built = Built::new(network, &frame, &Insertion::None, budget)?;
         if let Ok(determinant) = &built {
             affordable(determinant, reactive(network), budget)?;
         }
@@ -148,13 +148,8 @@ impl Pairing {
 
     /// N and D at a point.
     pub(crate) fn at(&self, point: &Point) -> Sample {
-        let ring = UnivariateRing { field: self.field };
-        let never = |result: Result<Univariate, Infallible>| match result {
-            Ok(value) => value,
-            Err(never) => match never {},
-        };
         let network = match &self.lower.plus {
-            Some(determinant) => never(determinant.value(&ring, point)),
+            Some(determinant) => determinant.sample(&self.field, point),
             None => Univariate::zero(),
         };
         let (factor, below) = match Values::<UnivariateRing>::polynomial(point, &self.lower.factor)
@@ -162,7 +157,7 @@ impl Pairing {
             Ok(pair) => pair,
             Err(never) => match never {},
         };
-        let upper = never(self.upper.value(&ring, point));
+        let upper = self.upper.sample(&self.field, point);
         Sample {
             numerator: upper.mul(&below, &self.field),
             denominator: network.mul(&factor, &self.field),
@@ -195,8 +190,8 @@ impl Pairing {
         ring: &PolynomialRing<'_>,
         values: &dyn for<'b> Values<PolynomialRing<'b>>,
     ) -> Result<(Polynomial, Polynomial), Exceeded> {
-        let numerator = self.upper.value(ring, values)?;
-        let denominator = self.lower.value(ring, values)?;
+        let numerator = self.upper.expand(ring, values)?;
+        let denominator = self.lower.expand(ring, values)?;
         Ok((numerator, denominator))
     }
 
@@ -206,9 +201,8 @@ impl Pairing {
             [&side.plus, &side.minus]
                 .into_iter()
                 .flatten()
-                .fold(crate::algebra::Integer::zero(), |sum, determinant| {
-                    sum + determinant.term_count()
-                })
+                .filter_map(Built::term_count)
+                .fold(crate::algebra::Integer::zero(), |sum, count| sum + count)
         };
         (count(&self.upper), count(&self.lower))
     }
@@ -219,7 +213,7 @@ impl Pairing {
             .into_iter()
             .flat_map(|side| {
                 let determinants = [&side.plus, &side.minus].into_iter().flatten();
-                let values = determinants.flat_map(Determinant::symbols);
+                let values = determinants.flat_map(Built::symbols);
                 values.chain(side.factor.symbols()).collect::<Vec<_>>()
             })
             .collect()
@@ -232,7 +226,7 @@ impl Pairing {
             return Ok(());
         }
         for determinant in [&self.upper.plus, &self.lower.plus].into_iter().flatten() {
-            if let Some(count) = determinant.distinct_terms() {
+            if let Some(count) = determinant.diagram(budget)?.distinct_terms() {
                 budget.terms(
                     count
                         .to_i64()
@@ -245,7 +239,7 @@ impl Pairing {
     }
 
     /// The determinants of both sides: (plus, minus, factor).
-    pub(crate) fn sides(&self) -> [(Option<&Determinant>, Option<&Determinant>, &Polynomial); 2] {
+    pub(crate) fn sides(&self) -> [(Option<&Built>, Option<&Built>, &Polynomial); 2] {
         [&self.upper, &self.lower]
             .map(|side| (side.plus.as_ref(), side.minus.as_ref(), &side.factor))
     }
@@ -255,9 +249,12 @@ impl Pairing {
 const SWEEP: usize = 4_000_000_000;
 
 /// Sweeps take about one multiplication for each state and power of s.
-fn affordable(determinant: &Determinant, reactive: usize, budget: &Budget) -> Result<(), Exceeded> {
+fn affordable(determinant: &Built, reactive: usize, budget: &Budget) -> Result<(), Exceeded> {
     budget.time()?;
-    if determinant.states().saturating_mul(reactive + 1) > SWEEP {
+    let Built::Diagram(diagram) = determinant else {
+        return Ok(());
+    };
+    if diagram.states().saturating_mul(reactive + 1) > SWEEP {
         return Err(Exceeded::States(SWEEP / (reactive + 1)));
     }
     Ok(())
@@ -271,7 +268,7 @@ fn reactive(network: &Network) -> usize {
 }
 
 impl Side {
-    fn of(plus: Option<Determinant>, factor: Polynomial) -> Self {
+    fn of(plus: Option<Built>, factor: Polynomial) -> Self {
         Self {
             plus,
             minus: None,
@@ -279,9 +276,25 @@ impl Side {
         }
     }
 
-    fn value<R: Ring>(&self, ring: &R, values: &dyn Values<R>) -> Result<R::Element, R::Error> {
-        let one = |side: &Option<Determinant>| match side {
-            Some(determinant) => determinant.value(ring, values),
+    fn sample(&self, field: &PrimeField, point: &Point) -> Univariate {
+        let one = |side: &Option<Built>| match side {
+            Some(determinant) => determinant.sample(field, point),
+            None => Univariate::zero(),
+        };
+        let sum = one(&self.plus).sub(&one(&self.minus), field);
+        match Values::<UnivariateRing>::polynomial(point, &self.factor) {
+            Ok((factor, _)) => sum.mul(&factor, field),
+            Err(never) => match never {},
+        }
+    }
+
+    fn expand(
+        &self,
+        ring: &PolynomialRing<'_>,
+        values: &dyn for<'b> Values<PolynomialRing<'b>>,
+    ) -> Result<Polynomial, Exceeded> {
+        let one = |side: &Option<Built>| match side {
+            Some(determinant) => determinant.expand(ring, values),
             None => Ok(ring.zero()),
         };
         let minus = ring.neg(&one(&self.minus)?);
