@@ -29,6 +29,8 @@ impl Default for Limits {
 pub struct Budget {
     limits: Limits,
     start: Instant,
+    /// Width of a diagram that is still worth while.
+    width: u64,
 }
 
 impl Default for Budget {
@@ -44,6 +46,7 @@ impl Budget {
         Self {
             limits,
             start: Instant::now(),
+            width: u64::MAX,
         }
     }
 
@@ -62,6 +65,19 @@ impl Budget {
     pub fn with_terms(mut self, terms: usize) -> Self {
         self.limits.terms = self.limits.terms.min(terms);
         self
+    }
+
+    /// The same budget, its clock running, for diagrams of a frontier whose states are about `width`.
+    #[must_use]
+    pub fn with_width(mut self, width: u64) -> Self {
+        self.width = width;
+        self
+    }
+
+    /// The width of a diagram that is still worth while.
+    #[must_use]
+    pub fn width(&self) -> u64 {
+        self.width
     }
 
     /// The limits.

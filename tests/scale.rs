@@ -97,3 +97,135 @@ fn an_amplifier_of_twenty_transistors_is_audited_without_its_formula() {
     assert_eq!(output.stdout, run(&["audit"], text).stdout);
     assert_eq!(run(&["order"], text).status.code(), Some(0));
 }
+
+/// What is said of order and degrees.
+fn degrees(answer: &Value) -> Vec<Value> {
+    let fields = [
+        "name",
+        "order",
+        "numerator_order",
+        "network",
+        "hidden",
+        "zero",
+    ];
+    let results = answer["results"].as_array().into_iter().flatten();
+    let of_network = results.filter(|result| result.get("network").is_some());
+    of_network
+        .flat_map(|result| fields.map(|field| result[field].clone()))
+        .chain([answer["order"].clone()])
+        .collect()
+}
+
+#[test]
+fn orders_by_elimination_are_those_of_the_diagram() {
+    let mut compared = 0;
+    for path in networks() {
+        let text = fs::read_to_string(&path).expect("a text");
+        if text.contains("use \"") || path.ends_with("field_effect_opamp.cutloop") {
+            continue;
+        }
+        // One state is enough for no diagram at all.
+        let expected = degrees(&json(&["order"], &text));
+        let found = degrees(&json(&["order", "--budget", "states=1"], &text));
+        assert_eq!(found, expected, "{}", path.display());
+        compared += expected.len();
+    }
+    assert!(compared > 600, "{compared}");
+}
+
+/// Every pair of nodes joined, by R and C in turn.
+fn complete_graph(nodes: usize) -> String {
+    let name = |node: usize| match node {
+        0 => "ground".to_owned(),
+        node => format!("v{node}"),
+    };
+    let mut text = String::from("v1 -Vs- ground\n");
+    let mut parts = 0;
+    for a in 0..nodes {
+        for b in a + 1..nodes {
+            if (a, b) != (0, 1) {
+                parts += 1;
+                let letter = if parts % 2 == 0 { 'R' } else { 'C' };
+                text += &format!("{} -{letter}{parts}- {}\n", name(a), name(b));
+            }
+        }
+    }
+    text + &format!("derive H = voltage(v{}) / Vs\n", nodes - 1)
+}
+
+/// Nodes in a square, neighbours joined by R, a C at each.
+fn grid(side: usize) -> String {
+    let mut text = String::from("n1x1 -Vs- ground\n");
+    for row in 1..=side {
+        for column in 1..=side {
+            if column < side {
+                let next = column + 1;
+                text += &format!("n{row}x{column} -Rh{row}x{column}- n{row}x{next}\n");
+            }
+            if row < side {
+                let next = row + 1;
+                text += &format!("n{row}x{column} -Rv{row}x{column}- n{next}x{column}\n");
+            }
+            if (row, column) != (1, 1) {
+                text += &format!("n{row}x{column} -C{row}x{column}- ground\n");
+            }
+        }
+    }
+    text + &format!("derive H = voltage(n{side}x{side}) / Vs\n")
+}
+
+fn ladder(sections: usize) -> String {
+    let mut text = String::from("n0 -Vs- ground\n");
+    for k in 1..=sections {
+        text += &format!("n{} -R{k}- n{k} -C{k}- ground\n", k - 1);
+    }
+    text + &format!("derive H = voltage(n{sections}) / Vs\n")
+}
+
+#[test]
+fn a_complete_graph_of_twenty_nodes_has_its_order() {
+    let text = complete_graph(20);
+    let answer = json(&["order"], &text);
+    // Bryant 1959 for C alone and R: capacitors less the loops they close with the source.
+    assert_eq!(answer["results"][0]["order"], answer["order"]["network"]);
+    assert_eq!(answer["results"][0]["hidden"], 0);
+    let formula = run(&["formula"], &text);
+    assert_eq!(formula.status.code(), Some(3));
+    let said = String::from_utf8_lossy(&formula.stdout);
+    assert!(
+        said.contains("its degrees are exact all the same"),
+        "{said}"
+    );
+}
+
+#[test]
+fn a_grid_of_ten_by_ten_has_its_order() {
+    let answer = json(&["order"], &grid(10));
+    assert_eq!(answer["order"]["network"], 99);
+    assert_eq!(answer["results"][0]["order"], 99);
+}
+
+#[test]
+#[ignore = "takes seconds"]
+fn a_grid_of_thirty_by_thirty_has_its_order() {
+    let answer = json(&["order"], &grid(30));
+    assert_eq!(answer["results"][0]["order"], 899);
+}
+
+#[test]
+fn a_ladder_of_ten_thousand_sections_has_its_order() {
+    let answer = json(&["order"], &ladder(10_000));
+    assert_eq!(answer["order"]["network"], 10_000);
+    assert_eq!(answer["results"][0]["order"], 10_000);
+    assert_eq!(answer["results"][0]["numerator_order"], 0);
+}
+
+#[test]
+#[ignore = "takes a minute and gigabytes"]
+fn a_ladder_of_a_million_sections_has_its_order() {
+    let answer = json(
+        &["order", "--budget", "states=1e7,seconds=120"],
+        &ladder(1_000_000),
+    );
+    assert_eq!(answer["order"]["network"], 1_000_000);
+}

@@ -114,7 +114,10 @@ impl Plan {
             if step.below.0 == step.below.1 {
                 continue;
             }
-            let inverse = inverses(field, &pivot);
+            let divisors = pivot.map(|entry| entry.max(1));
+            let Some(inverse) = field.inverses(&divisors) else {
+                return [None; LANES];
+            };
             let sources = &self.sources[step.row.0..step.row.1];
             for &(under, start) in &self.targets[step.below.0..step.below.1] {
                 let mut factor = values[under as usize];
@@ -144,23 +147,6 @@ impl Plan {
         }
         found
     }
-}
-
-/// Inverses of all lanes by one (Montgomery's trick); of zero anything.
-fn inverses(field: &PrimeField, lane: &Lane) -> Lane {
-    let mut before: Lane = [1; LANES];
-    let mut product = 1;
-    for index in 0..LANES {
-        before[index] = product;
-        product = field.mul(product, lane[index].max(1));
-    }
-    let mut inverse = field.inv(product).unwrap_or(1);
-    let mut found: Lane = [0; LANES];
-    for index in (0..LANES).rev() {
-        found[index] = field.mul(inverse, before[index]);
-        inverse = field.mul(inverse, lane[index].max(1));
-    }
-    found
 }
 
 impl Search<'_> {

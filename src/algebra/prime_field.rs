@@ -117,6 +117,23 @@ impl PrimeField {
         u64::try_from(old_factor.rem_euclid(i128::from(self.prime))).ok()
     }
 
+    /// 1/a for each, with one inversion (Montgomery's trick); `None` where one is zero.
+    #[must_use]
+    pub fn inverses(&self, list: &[u64]) -> Option<Vec<u64>> {
+        let mut product = 1;
+        let mut found: Vec<u64> = Vec::with_capacity(list.len());
+        for &a in list {
+            found.push(product);
+            product = self.mul(product, a);
+        }
+        let mut inverse = self.inv(product)?;
+        for (before, &a) in found.iter_mut().zip(list).rev() {
+            *before = self.mul(*before, inverse);
+            inverse = self.mul(inverse, a);
+        }
+        Some(found)
+    }
+
     /// A square root of a residue, where there is one and the prime is 3 mod 4.
     #[must_use]
     pub fn square_root(&self, a: u64) -> Option<u64> {
@@ -172,6 +189,16 @@ fn is_prime(candidate: u64) -> bool {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn inverses_of_many_are_those_of_each() {
+        let field = PrimeField::default_prime();
+        let list = [3, 1, 77, field.prime() - 1];
+        let each: Option<Vec<u64>> = list.iter().map(|&a| field.inv(a)).collect();
+        assert_eq!(field.inverses(&list), each);
+        assert_eq!(field.inverses(&[2, 0]), None);
+        assert_eq!(field.inverses(&[]), Some(Vec::new()));
+    }
 
     #[test]
     fn inverses_are_inverses() {

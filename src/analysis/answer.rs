@@ -27,6 +27,9 @@ use crate::network::{Ask, Assertion, Network};
 /// Terms of a formula that nobody asked for; it still tells where the order drops.
 const UNASKED: usize = 10_000;
 
+/// Width of a diagram where no formula is asked for; values modulo a prime are quicker beyond.
+const UNASKED_WIDTH: u64 = 1 << 12;
+
 /// Answers what is wanted of a network.
 ///
 /// # Errors
@@ -34,6 +37,11 @@ const UNASKED: usize = 10_000;
 /// when not even the orders could be decided, [`Failure::Witness`] when the independent check
 /// disagrees.
 pub fn answer(network: &Network, wanted: &Wanted, budget: &Budget) -> Result<Report, Failure> {
+    let budget = &if wanted.formulas || wanted.claims {
+        *budget
+    } else {
+        budget.with_width(UNASKED_WIDTH)
+    };
     let plain = Substitution::new(network, budget)?;
     if let Some(id) = plain.undefined.first() {
         let relation = network.relation(*id);
@@ -90,6 +98,27 @@ fn unusable(error: Diagnostic) -> Failure {
     Failure::Unusable(vec![error])
 }
 
+/// A function of which nothing was found within the budget.
+fn undecided_function(network: &Network, index: usize, exceeded: Exceeded) -> FunctionReport {
+    FunctionReport {
+        name: network.questions()[index].name.clone(),
+        question: index,
+        formula: Formula::OverBudget(exceeded),
+        forms: Forms::default(),
+        order: 0,
+        numerator_order: 0,
+        network: None,
+        hidden: None,
+        zero: false,
+        no_effect: Vec::new(),
+        drops_when: Vec::new(),
+        cancellations: None,
+        nominals_missing: Vec::new(),
+        relied_on: Vec::new(),
+        checked_points: 0,
+    }
+}
+
 struct Run<'a> {
     setting: Setting<'a>,
     knowledge: Knowledge<'a>,
@@ -109,7 +138,14 @@ impl Run<'_> {
             if !needed.contains(&index) {
                 continue;
             }
-            let made = match solve(&self.setting, question)? {
+            let solved = match solve(&self.setting, question) {
+                Ok(solved) => solved,
+                Err(exceeded) => {
+                    reports.push(undecided_function(network, index, exceeded));
+                    continue;
+                }
+            };
+            let made = match solved {
                 Some(Ok(solved)) => self.of_network(index, &solved, &mut known)?,
                 Some(Err(error)) => {
                     errors.push(*error);
@@ -218,7 +254,6 @@ impl Run<'_> {
     ) -> Result<FunctionReport, Failure> {
         let network = self.setting.network;
         let question = &network.questions()[index];
-        let over = |exceeded: Exceeded| Formula::OverBudget(exceeded);
         let value = functions::evaluate(
             network,
             question,
@@ -226,23 +261,8 @@ impl Run<'_> {
             self.setting.rooted,
             self.setting.budget,
         );
-        let mut report = FunctionReport {
-            name: question.name.clone(),
-            question: index,
-            formula: over(Exceeded::Terms(self.setting.budget.limits().terms)),
-            forms: Forms::default(),
-            order: 0,
-            numerator_order: 0,
-            network: None,
-            hidden: None,
-            zero: false,
-            no_effect: Vec::new(),
-            drops_when: Vec::new(),
-            cancellations: None,
-            nominals_missing: Vec::new(),
-            relied_on: Vec::new(),
-            checked_points: 0,
-        };
+        let unknown = Exceeded::Terms(self.setting.budget.limits().terms);
+        let mut report = undecided_function(network, index, unknown);
         match value {
             Ok(Some(fraction)) => {
                 report.order = fraction.denominator().degree(Symbol::S);
@@ -258,7 +278,9 @@ impl Run<'_> {
                 self.conditions(&mut report);
             }
             Ok(None) => {}
-            Err(functions::Trouble::Exceeded(exceeded)) => report.formula = over(exceeded),
+            Err(functions::Trouble::Exceeded(exceeded)) => {
+                report.formula = Formula::OverBudget(exceeded);
+            }
             Err(functions::Trouble::Wrong(error)) => return Err(unusable(*error)),
         }
         Ok(report)

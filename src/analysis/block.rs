@@ -69,7 +69,11 @@ impl Weight {
         slots: &[(R::Element, R::Element)],
         s: &R::Element,
     ) -> Result<R::Element, R::Error> {
-        let mut product = ring.integer(&self.number);
+        let mut product = if self.number.is_one() {
+            ring.one()
+        } else {
+            ring.integer(&self.number)
+        };
         for atom in &self.atoms {
             product = match atom {
                 Atom::Above(slot) => ring.mul(&product, &slots[*slot].0)?,

@@ -34,14 +34,18 @@ impl Built {
             Ok(built) => Ok(built.map(|diagram| Self::Diagram(Box::new(diagram)))),
             Err(Exceeded::States(_)) => {
                 let assembly = assemble(network, frame, insertion);
-                let sampled = Sampled::build(assembly, budget)?;
-                Ok(match sampled {
-                    Some(sampled) => Ok(Self::Sampled(Box::new(sampled))),
-                    None => Err(Singular {
+                match Sampled::build(assembly, budget) {
+                    Ok(Some(sampled)) => Ok(Ok(Self::Sampled(Box::new(sampled)))),
+                    Ok(None) => Ok(Err(Singular {
                         elements: Vec::new(),
                         kind: SingularKind::NoTree,
-                    }),
-                })
+                    })),
+                    Err(Exceeded::States(_)) if budget.width() < u64::MAX => {
+                        let whole = budget.with_width(u64::MAX);
+                        Self::new(network, frame, insertion, &whole)
+                    }
+                    Err(other) => Err(other),
+                }
             }
             Err(other) => Err(other),
         }

@@ -10,9 +10,9 @@ use crate::analysis::setup::{Frame, Insertion};
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Network, Value};
 
-/// Cost of an order of parts from which on no diagram is begun: a frontier of some 20 nodes in each
+/// Cost of an order of parts from which on no diagram is begun: a frontier of some 15 nodes in each
 /// graph.
-const HOPELESS: u64 = 1 << 40;
+const HOPELESS: u64 = 1 << 32;
 
 /// A determinant before any value is put in.
 #[derive(Clone, Debug)]
@@ -62,7 +62,8 @@ impl Determinant {
             return Ok(Err(singular));
         }
         let (order, cost) = order(&assembly.blocks, assembly.nodes);
-        if cost > HOPELESS {
+        let blocks = assembly.blocks.len() as u64;
+        if cost > HOPELESS.min(budget.width().saturating_mul(blocks)) {
             return Err(Exceeded::States(budget.limits().states));
         }
         let diagram = Diagram::build(&assembly.blocks, &order, assembly.nodes, budget)?;

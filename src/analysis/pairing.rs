@@ -1,13 +1,16 @@
 //! A question as a quotient of determinants, evaluated over any layer of values.
 
 use std::collections::BTreeSet;
+use std::convert::Infallible;
 
 use crate::algebra::univariate::Univariate;
-use crate::algebra::{Polynomial, PolynomialRing, PrimeField, Ring, Symbol, UnivariateRing};
+use crate::algebra::{
+    Polynomial, PolynomialRing, PrimeField, Ring, Series, SeriesRing, Symbol, UnivariateRing,
+};
 use crate::analysis::built::Built;
 use crate::analysis::contraction::Singular;
 use crate::analysis::determinant::Values;
-use crate::analysis::point::{Choice, Point};
+use crate::analysis::point::{Choice, Point, Terms};
 use crate::analysis::setup::{Frame, Insertion, Response};
 use crate::budget::{Budget, Exceeded};
 use crate::network::{Ask, ElementId, Network, RelationId};
@@ -18,6 +21,8 @@ pub(crate) struct Pairing {
     lower: Side,
     /// Order of the network the question is asked in is the degree of the lower determinant.
     field: PrimeField,
+    /// Whole polynomials in s would take too long; see [`Pairing::extremes`].
+    large: bool,
 }
 
 /// A difference of determinants times a polynomial. A determinant that is zero whatever the values is
@@ -38,6 +43,18 @@ pub(crate) struct Sample {
     /// The lower determinant alone.
     pub(crate) network: Univariate,
 }
+
+/// Degree and multiplicity of s = 0, where polynomials are too long to be computed.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(crate) struct Extremes {
+    /// Of the numerator; `None` for zero.
+    pub(crate) numerator: Option<(u32, u32)>,
+    /// Of the denominator.
+    pub(crate) denominator: (u32, u32),
+}
+
+/// Terms that series keep, one attempt after the other.
+const KEPT: [usize; 3] = [2, 8, 64];
 
 /// The determinants of a question, or the contradiction that makes the lower one vanish.
 pub(crate) enum Paired {
@@ -101,14 +118,15 @@ impl Pairing {
         };
         let (built, factor) = lower;
         let reactive = reactive(network);
-        for determinant in built.iter().chain(&upper.plus).chain(&upper.minus) {
-            affordable(determinant, reactive, budget)?;
-        }
+        budget.time()?;
+        let mut determinants = built.iter().chain(&upper.plus).chain(&upper.minus);
+        let large = determinants.any(|determinant| is_large(determinant, reactive));
         Ok(Some(match built {
             Ok(determinant) => Paired::Pairing(Box::new(Self {
                 upper,
                 lower: Side::of(Some(determinant), factor),
                 field: PrimeField::default_prime(),
+                large,
             })),
             Err(singular) => Paired::Singular(singular),
         }))
@@ -122,14 +140,16 @@ impl Pairing {
     ) -> Result<Paired, Exceeded> {
         let frame = Frame::without(without);
         let built = Built::new(network, &frame, &Insertion::None, budget)?;
-        if let Ok(determinant) = &built {
-            affordable(determinant, reactive(network), budget)?;
-        }
+        budget.time()?;
+        let large = built
+            .as_ref()
+            .is_ok_and(|determinant| is_large(determinant, reactive(network)));
         Ok(match built {
             Ok(determinant) => Paired::Pairing(Box::new(Self {
                 upper: Side::of(None, Polynomial::one()),
                 lower: Side::of(Some(determinant), Polynomial::one()),
                 field: PrimeField::default_prime(),
+                large,
             })),
             Err(singular) => Paired::Singular(singular),
         })
@@ -163,6 +183,36 @@ impl Pairing {
             denominator: network.mul(&factor, &self.field),
             network,
         }
+    }
+
+    /// Whether only [`Pairing::extremes`] are to be had.
+    pub(crate) fn is_large(&self) -> bool {
+        self.large
+    }
+
+    /// The ends of numerator, denominator and lower determinant at a point of a large pairing; `None`
+    /// where they are not decided.
+    pub(crate) fn extremes(&self, network: &Network, seed: u64) -> Option<Extremes> {
+        let choice = Choice {
+            seed,
+            shift: 0,
+            released: &|_| false,
+            salt: None,
+        };
+        let point = Point::new(network, &self.field, &choice)?;
+        let of = |side: &Side| {
+            let degree = side.lowest(&self.field, &point, true)?;
+            let valuation = side.lowest(&self.field, &point, false)?;
+            let number = |power: i64| u32::try_from(power).ok();
+            Some(match (degree, valuation) {
+                (Some(degree), Some(valuation)) => Some((number(-degree)?, number(valuation)?)),
+                _ => None,
+            })
+        };
+        Some(Extremes {
+            numerator: of(&self.upper)?,
+            denominator: of(&self.lower)??,
+        })
     }
 
     /// Some sample at the given relations, at the first lucky seed from `seed` on.
@@ -246,18 +296,14 @@ impl Pairing {
 }
 
 /// Multiplications one sweep over polynomials in s may take.
-const SWEEP: usize = 4_000_000_000;
+const SWEEP: usize = 200_000_000;
 
 /// Sweeps take about one multiplication for each state and power of s.
-fn affordable(determinant: &Built, reactive: usize, budget: &Budget) -> Result<(), Exceeded> {
-    budget.time()?;
-    let Built::Diagram(diagram) = determinant else {
-        return Ok(());
-    };
-    if diagram.states().saturating_mul(reactive + 1) > SWEEP {
-        return Err(Exceeded::States(SWEEP / (reactive + 1)));
+fn is_large(determinant: &Built, reactive: usize) -> bool {
+    match determinant {
+        Built::Diagram(diagram) => diagram.states().saturating_mul(reactive + 1) > SWEEP,
+        Built::Sampled(_) => false,
     }
-    Ok(())
 }
 
 fn reactive(network: &Network) -> usize {
@@ -274,6 +320,39 @@ impl Side {
             minus: None,
             factor,
         }
+    }
+
+    /// The lowest power of s, or of 1/s; `Some(None)` for zero, `None` where it is not decided.
+    fn lowest(&self, field: &PrimeField, point: &Point, inverse: bool) -> Option<Option<i64>> {
+        for terms in KEPT {
+            let ring = SeriesRing {
+                field: *field,
+                terms,
+                inverse,
+            };
+            let found = match self.series(ring, point)? {
+                Ok(found) => found,
+                Err(never) => match never {},
+            };
+            if found.low().is_some() || found.is_zero() {
+                return Some(found.low());
+            }
+        }
+        None
+    }
+
+    /// The value as a series; `None` without a diagram.
+    fn series(&self, ring: SeriesRing, point: &Point) -> Option<Result<Series, Infallible>> {
+        let values = Terms { point, ring };
+        let one = |side: &Option<Built>| match side {
+            Some(Built::Diagram(diagram)) => Some(diagram.value(&ring, &values)),
+            Some(Built::Sampled(_)) => None,
+            None => Some(Ok(ring.zero())),
+        };
+        let (plus, minus) = (one(&self.plus)?, one(&self.minus)?);
+        let (Ok(plus), Ok(minus), Ok((factor, _))) = (plus, minus, values.polynomial(&self.factor));
+        let Ok(sum) = ring.add(&plus, &ring.neg(&minus));
+        Some(ring.mul(&sum, &factor))
     }
 
     fn sample(&self, field: &PrimeField, point: &Point) -> Univariate {

@@ -4,7 +4,9 @@
 use std::convert::Infallible;
 
 use crate::algebra::univariate::Univariate;
-use crate::algebra::{Fraction, Polynomial, PrimeField, Symbol, UnivariateRing};
+use crate::algebra::{
+    Fraction, Polynomial, PrimeField, Series, SeriesRing, Symbol, UnivariateRing,
+};
 use crate::analysis::determinant::Values;
 use crate::analysis::relations::resolution_order;
 use crate::network::{Network, RelationId, Strength, Value};
@@ -267,6 +269,38 @@ impl Values<UnivariateRing> for Point {
     fn polynomial(&self, polynomial: &Polynomial) -> Result<(Univariate, Univariate), Infallible> {
         let value = Self::polynomial(self, polynomial, &self.field, &|_| 0);
         Ok((value.numerator, value.denominator))
+    }
+}
+
+/// The values of a point as series.
+pub(crate) struct Terms<'a> {
+    /// The point.
+    pub(crate) point: &'a Point,
+    /// The series.
+    pub(crate) ring: SeriesRing,
+}
+
+impl Terms<'_> {
+    fn both(&self, pair: (Univariate, Univariate)) -> (Series, Series) {
+        (self.ring.polynomial(&pair.0), self.ring.polynomial(&pair.1))
+    }
+}
+
+impl Values<SeriesRing> for Terms<'_> {
+    fn symbol(&self, symbol: Symbol) -> Result<(Series, Series), Infallible> {
+        Values::<UnivariateRing>::symbol(self.point, symbol).map(|pair| self.both(pair))
+    }
+
+    fn mutual(&self, coupling: usize) -> Result<(Series, Series), Infallible> {
+        Values::<UnivariateRing>::mutual(self.point, coupling).map(|pair| self.both(pair))
+    }
+
+    fn s(&self) -> Series {
+        self.ring.polynomial(&Univariate::variable())
+    }
+
+    fn polynomial(&self, polynomial: &Polynomial) -> Result<(Series, Series), Infallible> {
+        Values::<UnivariateRing>::polynomial(self.point, polynomial).map(|pair| self.both(pair))
     }
 }
 

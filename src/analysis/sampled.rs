@@ -229,17 +229,18 @@ impl Sampled {
         };
         let mut factor = 1;
         let mut weights: Vec<Vec<u64>> = Vec::with_capacity(self.blocks.len());
-        let mut inverses = Vec::with_capacity(self.blocks.len());
+        let mut divisors = Vec::with_capacity(self.blocks.len());
         for block in &self.blocks {
             let own: Vec<u64> = block.choices.iter().map(|it| weigh(&it.weight)).collect();
             let empty = block.choices.iter().position(|it| it.current.is_empty());
             let divisor = own.get(empty.unwrap_or(0)).copied().unwrap_or(1);
-            inverses.push(field.inv(divisor)?);
+            divisors.push(divisor);
             if empty.is_some() {
                 factor = field.mul(factor, divisor);
             }
             weights.push(own);
         }
+        let inverses = field.inverses(&divisors)?;
         let mut entries = vec![0; self.places.len()];
         for stamp in &self.stamps {
             let value = match stamp.share {

@@ -102,6 +102,14 @@ pub(crate) fn network_degrees(
         Paired::Pairing(pairing) => pairing,
         Paired::Singular(singular) => return Ok(Err(explain(&singular.elements))),
     };
+    if pairing.is_large() {
+        let [first, second] = [SEED, SEED + 1000].map(|seed| pairing.extremes(network, seed));
+        let (Some(first), Some(second)) = (first, second) else {
+            return Err(Exceeded::States(budget.limits().states));
+        };
+        let (a, b) = (first.denominator, second.denominator);
+        return Ok(Ok((a.0.max(b.0), a.1.min(b.1))));
+    }
     let mut best: Option<(u32, u32)> = None;
     for seed in [SEED, SEED + 1000] {
         let Some(sample) = pairing.lucky(network, seed, 0, &|_| false) else {
@@ -172,6 +180,15 @@ pub(crate) fn solve(
         Some(Paired::Singular(singular)) => return Ok(Some(Err(explain(&singular.elements)))),
         Some(Paired::Pairing(pairing)) => pairing,
     };
+    if pairing.is_large() {
+        let exceeded = Exceeded::States(setting.budget.limits().states);
+        let degrees = large_degrees(network, &pairing).ok_or(exceeded)?;
+        return Ok(Some(Ok(Solved {
+            pairing,
+            degrees,
+            function: Err(Exceeded::Terms(setting.budget.limits().terms)),
+        })));
+    }
     let samples: Vec<Sample> = [SEED, SEED + 1000]
         .into_iter()
         .filter_map(|seed| pairing.lucky(network, seed, 0, &|_| false))
@@ -186,6 +203,33 @@ pub(crate) fn solve(
         degrees,
         function,
     })))
+}
+
+/// Degrees where polynomials in s are too long: from their ends alone, where the numerator is one
+/// power of s, so that the common factor is one, too.
+fn large_degrees(network: &Network, pairing: &Pairing) -> Option<Degrees> {
+    let found = pairing.extremes(network, SEED)?;
+    if pairing.extremes(network, SEED + 1000)? != found {
+        return None;
+    }
+    let (all, low) = found.denominator;
+    let Some((above, power)) = found.numerator else {
+        return Some(Degrees {
+            network: all,
+            order: 0,
+            numerator: 0,
+            common: all,
+            zero: true,
+        });
+    };
+    let common = power.min(low);
+    (above == power).then_some(Degrees {
+        network: all,
+        order: all - common,
+        numerator: above - common,
+        common,
+        zero: false,
+    })
 }
 
 /// The best of the samples: highest degrees, lowest degree of the common factor.

@@ -87,6 +87,9 @@ impl Auditor<'_> {
                 nominals_missing: Vec::new(),
             });
         }
+        if self.solved.pairing.is_large() {
+            return Err(Exceeded::States(self.setting.budget.limits().states));
+        }
         let common = self.common()?;
         if common.degree(Symbol::S) > 0 {
             let structural = self.structural()?;
