@@ -151,4 +151,21 @@ impl fmt::Display for Exceeded {
     }
 }
 
+impl Exceeded {
+    /// The option that goes ten times as far.
+    #[must_use]
+    pub fn further(&self) -> String {
+        match self {
+            Self::Terms(limit) => format!("--budget terms={}", limit.saturating_mul(10).max(10)),
+            Self::States(limit) => format!("--budget states={}", limit.saturating_mul(10).max(10)),
+            Self::Time(limit) => {
+                format!(
+                    "--budget seconds={}",
+                    limit.as_secs().saturating_mul(10).max(10)
+                )
+            }
+        }
+    }
+}
+
 impl std::error::Error for Exceeded {}

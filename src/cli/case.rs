@@ -138,7 +138,7 @@ impl Unsolved {
             Failure::Unusable(list) => list.clone(),
             Failure::Budget(exceeded) => vec![
                 Diagnostic::whole(format!("{exceeded}, nothing is answered"))
-                    .help("allow more, for example --budget terms=1e6,states=1e7,seconds=60"),
+                    .help(format!("allow more: {}", exceeded.further())),
             ],
             Failure::Witness(text) => vec![
                 Diagnostic::whole(format!("the independent check disagreed: {text}"))

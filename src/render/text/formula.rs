@@ -37,6 +37,8 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
             text.push_str(&format!("  {}\n", paint.unsure(&sentence)));
             if result.degrees_known() {
                 text.push_str(&remark("its degrees are exact all the same", page));
+                let further = format!("more is tried with {}", exceeded.further());
+                text.push_str(&remark(&further, page));
             }
         }
     }
