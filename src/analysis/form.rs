@@ -4,6 +4,7 @@
 //! it stands for; among the forms found, the one with fewest leaves is taken, then with fewest
 //! operations, then the first in the order of names.
 
+mod character;
 mod gradient;
 mod merge;
 mod response;
@@ -13,6 +14,7 @@ mod write;
 
 use std::time::Duration;
 
+pub use character::{Character, Inequality, Kind, Step};
 pub use response::{Designer, Section, Shape};
 pub use tree::Form;
 
@@ -36,6 +38,8 @@ pub struct Forms {
     pub dc: Option<Limit>,
     /// The limit for s towards infinity.
     pub hf: Option<Limit>,
+    /// What a function of first or second order does.
+    pub character: Option<Character>,
 }
 
 /// Coefficients of s^0, s^1, …; the first of the denominator that is not zero is one.
@@ -75,19 +79,29 @@ pub fn forms(network: &Network, formula: &Expanded) -> Forms {
     let writer = Writer::new(network, &budget);
     let all = formula.numerator.iter().chain(&formula.denominator);
     let short = all.map(Polynomial::len).sum::<usize>() <= MOST_TERMS;
+    let designer = short
+        .then(|| {
+            response::designer(network, formula, &writer, &budget)
+                .ok()
+                .flatten()
+        })
+        .flatten();
+    let first = |section: &Section| matches!(section.shape, Shape::First { .. });
+    let factored = designer.iter().any(|it| it.below.iter().all(first));
     Forms {
-        designer: short
-            .then(|| {
-                response::designer(network, formula, &writer, &budget)
-                    .ok()
-                    .flatten()
-            })
-            .flatten(),
+        designer,
         normalised: short
             .then(|| normalised(formula, &writer).ok().flatten())
             .flatten(),
         dc: dc(formula, &writer).ok().flatten(),
         hf: hf(formula, &writer).ok().flatten(),
+        character: short
+            .then(|| {
+                character::character(network, formula, factored, &writer, &budget)
+                    .ok()
+                    .flatten()
+            })
+            .flatten(),
     }
 }
 

@@ -97,7 +97,7 @@ impl<'a> Writer<'a> {
         let resonances = resonances.filter(|it| matches!(it.shape, Shape::Second { .. }));
         Self {
             names,
-            alone: all.filter(own).count() == 1,
+            alone: all.filter(own).count() == 1 || is_first_over_first(designer),
             firsts: [0, 0],
             seconds: [0, 0],
             resonances: resonances.count(),
@@ -133,6 +133,13 @@ impl<'a> Writer<'a> {
                 if !self.alone && value.leaves() <= IN_PLACE {
                     let term = Form::product([Form::Symbol(Symbol::S), tau.clone()]);
                     return one_plus([form::math(&term, self.names)]);
+                }
+                let turned = value.clone().signed(true);
+                for known in &self.definitions {
+                    if known.value == value || known.value == turned {
+                        let negative = known.value == turned;
+                        return one_plus([times_s(&known.name).signed(negative)]);
+                    }
                 }
                 self.firsts[side] += 1;
                 let number = if several {
@@ -215,6 +222,12 @@ impl<'a> Writer<'a> {
         });
         name
     }
+}
+
+/// Whether one section of first order stands above one of first order.
+fn is_first_over_first(designer: &Designer) -> bool {
+    let first = |list: &[Section]| matches!(list, [only] if only.power == 1 && matches!(only.shape, Shape::First { .. }));
+    first(&designer.above) && first(&designer.below)
 }
 
 /// Place of a section among its like: by kind, then as its first value is spelled.

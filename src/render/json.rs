@@ -3,7 +3,7 @@
 use serde_json::{Map, Value, json};
 
 use crate::algebra::Polynomial;
-use crate::analysis::form::{Form, Forms, Limit, Section, Shape};
+use crate::analysis::form::{Form, Forms, Inequality, Kind, Limit, Section, Shape};
 use crate::analysis::report::{
     Cancellation, ClaimReport, Drop, Expanded, Finding, Formula, FunctionReport, Nested,
     NetworkOrder, Verdict,
@@ -11,6 +11,7 @@ use crate::analysis::report::{
 use crate::diagnostic::Diagnostic;
 use crate::network::CancellationClass;
 use crate::render::answer::{Answer, Detail};
+use crate::render::character;
 use crate::render::form;
 use crate::render::linear::MACHINE;
 use crate::render::math::{self, Math};
@@ -193,6 +194,34 @@ fn insert_forms(object: &mut Object, forms: &Forms, names: &Names<'_>) {
         };
         object.insert(key.into(), json!(text));
     }
+    let Some(character) = &forms.character else {
+        return;
+    };
+    if let Some(kind) = &character.kind {
+        object.insert("kind".into(), json!(character::word(kind)));
+        if let Kind::UnevenNotch(above) = kind {
+            object.insert("low_pass_notch_where".into(), inequality(above, names));
+        }
+    }
+    if !character.all_pass_where.is_empty() {
+        let equations = character.all_pass_where.iter();
+        let equations: Vec<Value> = equations
+            .map(|(left, right)| json!([spelled(left), spelled(right)]))
+            .collect();
+        object.insert("all_pass_where_equal".into(), json!(equations));
+    }
+    if let Some(conjugate) = &character.conjugate {
+        object.insert("conjugate_poles_where".into(), inequality(conjugate, names));
+    }
+    if let Some(step) = &character.step {
+        let value = json!({ "initial": spelled(&step.first), "final": spelled(&step.last) });
+        object.insert("step".into(), value);
+    }
+}
+
+fn inequality(it: &Inequality, names: &Names<'_>) -> Value {
+    let spelled = |it: &Form| MACHINE.spell(&form::math(it, names));
+    json!({ "larger": spelled(&it.left), "smaller": spelled(&it.right), "always": it.always })
 }
 
 /// A section; roots are spelled `sqrt(…)`.

@@ -4,6 +4,7 @@
 //! the analysis has not decided: a result that was not written down whole is never shown in part.
 
 pub mod answer;
+pub mod character;
 pub mod coefficients;
 pub mod designer;
 #[cfg(test)]

@@ -1,7 +1,8 @@
 //! Derived functions as displayed equations.
 
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
-use crate::render::answer::{Answer, FormStyle};
+use crate::render::answer::{Answer, Detail, FormStyle};
+use crate::render::character;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
 use crate::render::designer::{StandardForm, standard};
 use crate::render::latex::escape::{escape, name};
@@ -14,10 +15,46 @@ use crate::render::sentence;
 pub(super) fn function(answer: &Answer<'_>, result: &FunctionReport) -> String {
     let names = answer.names(FrequencyPlace::First);
     match &result.formula {
-        Formula::Expanded(formula) => expanded(result, formula, &names, answer.style),
+        Formula::Expanded(formula) => {
+            let mut text = expanded(result, formula, &names, answer.style);
+            if answer.style == FormStyle::Designer && answer.detail == Detail::Formula {
+                text.push_str(&what_it_does(result, &names));
+            }
+            text
+        }
         Formula::Nested(form) => nested(&result.name, form, &names),
         Formula::OverBudget(exceeded) => format!("{}\n", escape(&sentence::over_budget(exceeded))),
     }
+}
+
+/// Kind of the response, where the poles are conjugate, the answer to a step.
+fn what_it_does(result: &FunctionReport, names: &Names<'_>) -> String {
+    let forms = &result.forms;
+    let Some(character) = &forms.character else {
+        return String::new();
+    };
+    let mut sentences: Vec<String> = character::remarks(character, names)
+        .into_iter()
+        .map(|it| match it.inequality {
+            Some((left, right)) => {
+                let words = escape(&it.words);
+                format!("{words} ${} > {}$", spell(&left), spell(&right))
+            }
+            None => escape(&it.words),
+        })
+        .collect();
+    if let Some(step) = character::step(&result.name, &name(&result.name), forms, names) {
+        let rest = if step.oscillates {
+            " with $\\sigma = \\omega_0/(2Q)$, $\\omega_d = \\omega_0\\sqrt{1 - 1/(4Q^2)}$"
+        } else {
+            ""
+        };
+        sentences.push(format!("unit step: ${}${rest}", step.latex));
+    }
+    if sentences.is_empty() {
+        return String::new();
+    }
+    format!("{}.\n", sentences.join("; "))
 }
 
 fn expanded(

@@ -3,7 +3,8 @@
 use crate::algebra::{Polynomial, Symbol};
 use crate::analysis::form::{Forms, Limit};
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
-use crate::render::answer::{Answer, FormStyle};
+use crate::render::answer::{Answer, Detail, FormStyle};
+use crate::render::character;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
 use crate::render::designer::{self, StandardForm, standard};
 use crate::render::form;
@@ -29,7 +30,10 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
     text.push('\n');
     match &result.formula {
         Formula::Expanded(formula) => {
-            text.push_str(&expanded(result, formula, &names, page, answer.style))
+            text.push_str(&expanded(result, formula, &names, page, answer.style));
+            if answer.style == FormStyle::Designer && answer.detail == Detail::Formula {
+                text.push_str(&what_it_does(&result.name, &result.forms, &names, page));
+            }
         }
         Formula::Nested(form) => text.push_str(&nested(&result.name, form, &names, page)),
         Formula::OverBudget(exceeded) => {
@@ -117,6 +121,40 @@ fn expanded(
         }
     }
     text
+}
+
+/// Kind of the response, where the poles are conjugate, the answer to a step.
+fn what_it_does(name: &str, forms: &Forms, names: &Names<'_>, page: &Page) -> String {
+    let Some(character) = &forms.character else {
+        return String::new();
+    };
+    let words: Vec<String> = character::remarks(character, names)
+        .into_iter()
+        .map(|it| match it.inequality {
+            Some((left, right)) => {
+                let (left, right) = (READING.spell(&left), READING.spell(&right));
+                let line = format!("{} {left} > {right}", it.words);
+                if INDENT + columns(&line) <= page.width {
+                    line
+                } else {
+                    it.short
+                }
+            }
+            None => it.words,
+        })
+        .collect();
+    let mut lines = fill::words(&words, " · ", page.width - INDENT);
+    if let Some(step) = character::step(name, name, forms, names) {
+        lines.push(format!("unit step: {}", step.text));
+        if step.oscillates {
+            lines.push(format!("           {}", character::OSCILLATION));
+        }
+    }
+    if lines.is_empty() {
+        return String::new();
+    }
+    let lines = lines.iter().map(|line| format!("  {line}\n"));
+    format!("\n{}", lines.collect::<String>())
 }
 
 /// How long a fraction would be.
