@@ -129,6 +129,8 @@ pub enum Exceeded {
     States(usize),
     /// Wall time.
     Time(Duration),
+    /// Bits of one root.
+    Bits(u64),
 }
 
 impl fmt::Display for Exceeded {
@@ -146,6 +148,10 @@ impl fmt::Display for Exceeded {
                 formatter,
                 "the budget of {} seconds was reached",
                 limit.as_secs()
+            ),
+            Self::Bits(limit) => write!(
+                formatter,
+                "roots are not apart within the limit of {limit} bits"
             ),
         }
     }
