@@ -272,6 +272,8 @@ pub struct Wanted {
     pub claims: bool,
     /// Cancellations with class and cause.
     pub cancellations: bool,
+    /// Figures at the nominals.
+    pub figures: bool,
 }
 
 /// Why there is no report.

@@ -11,6 +11,7 @@ use crate::cli::input::{Origin, used};
 use crate::diagnostic::{Diagnostic, Severity};
 use crate::language::{self, ReadOptions};
 use crate::network::Network;
+use crate::numeric::{self, FunctionFigures};
 use crate::render::{Answer, Detail, FormStyle};
 use crate::source::{SourceId, Sources};
 
@@ -34,6 +35,10 @@ pub(super) struct Solved {
     pub(super) network: Network,
     /// The findings.
     pub(super) report: Report,
+    /// Figures at the nominals, where they were asked for.
+    pub(super) figures: Vec<FunctionFigures>,
+    /// They were not finished within the budget.
+    pub(super) figures_cut: bool,
 }
 
 /// A case without an answer.
@@ -85,7 +90,7 @@ impl Case {
             Ok(remark) => {
                 self.read.extend(remark);
                 analysis::answer(&network, wanted, &budget)
-                    .map(|report| Solved { network, report })
+                    .map(|report| Solved::new(network, report, wanted, &budget))
                     .map_err(|failure| Unsolved::new(&failure))
             }
         };
@@ -101,6 +106,7 @@ impl Case {
             sources: &self.sources,
             network: &solved.network,
             report: &solved.report,
+            figures: &solved.figures,
             warnings: &self.read,
             detail,
             style: FormStyle::default(),
@@ -119,8 +125,37 @@ impl Case {
     /// How the run ends as far as this text is concerned.
     pub(super) fn exit(&self, wanted: &Wanted) -> Exit {
         match &self.outcome {
+            Ok(solved) if solved.figures_cut => {
+                Exit::of_report(&solved.report, wanted.formulas).max(Exit::Undecided)
+            }
             Ok(solved) => Exit::of_report(&solved.report, wanted.formulas),
             Err(unsolved) => unsolved.exit,
+        }
+    }
+}
+
+impl Solved {
+    /// Adds the figures where they are wanted; where the budget ends before them a warning says so.
+    fn new(network: Network, mut report: Report, wanted: &Wanted, budget: &Budget) -> Self {
+        let figures = if wanted.figures {
+            numeric::figures(&network, &report, budget)
+        } else {
+            Ok(Vec::new())
+        };
+        let figures_cut = figures.is_err();
+        if let Err(exceeded) = &figures {
+            let warning = Diagnostic {
+                severity: Severity::Warning,
+                ..Diagnostic::whole(format!("figures are missing: {exceeded}"))
+                    .help("allow more, for example --budget seconds=60")
+            };
+            report.warnings.push(warning);
+        }
+        Self {
+            network,
+            report,
+            figures: figures.unwrap_or_default(),
+            figures_cut,
         }
     }
 }

@@ -177,8 +177,8 @@ impl Big {
     #[must_use]
     pub fn to_rational(&self) -> Rational {
         let mantissa = Rational::from(Integer::from(self.mantissa.clone()));
-        let power = Integer::from(2)
-            .pow(u32::try_from(self.exponent.unsigned_abs()).unwrap_or(u32::MAX));
+        let power =
+            Integer::from(2).pow(u32::try_from(self.exponent.unsigned_abs()).unwrap_or(u32::MAX));
         let power = Rational::from(power);
         if self.exponent >= 0 {
             mantissa * power
@@ -310,7 +310,10 @@ impl BigComplex {
     /// A real number.
     #[must_use]
     pub fn real(re: Big) -> Self {
-        Self { re, im: Big::zero() }
+        Self {
+            re,
+            im: Big::zero(),
+        }
     }
 
     /// The complex conjugate.

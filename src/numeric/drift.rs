@@ -11,7 +11,7 @@ use crate::budget::{Budget, Exceeded};
 use crate::network::{CancellationClass, Network, Origin};
 use crate::numeric::big::Big;
 use crate::numeric::layer::{Layer, deviation};
-use crate::numeric::near::{Side, derivative};
+use crate::numeric::near::{Side, derivative, settled};
 use crate::numeric::nominal::Nominals;
 use crate::numeric::quotient::{Quotient, numbers};
 use crate::numeric::roots::{Root, roots, value_at};
@@ -64,7 +64,10 @@ pub(super) fn cancelled(
     }
     let factor = nominals.in_s(&it.factor).0.primitive();
     let modes = roots(&factor, budget)?;
-    let upper: Vec<&Root> = modes.iter().filter(|mode| mode.centre.im.signum() >= 0).collect();
+    let upper: Vec<&Root> = modes
+        .iter()
+        .filter(|mode| mode.centre.im.signum() >= 0)
+        .collect();
     let drifts = match it.class {
         CancellationClass::Structural => Vec::new(),
         CancellationClass::Matched => {
@@ -124,12 +127,6 @@ fn released(
     let Some(Paired::Pairing(pairing)) = paired else {
         return Ok(Vec::new());
     };
-    let all_known = network
-        .all_facts()
-        .all(|facts| facts.origin == Origin::Derived || nominals.value(facts.symbol).is_some() || has_s(network, facts.symbol));
-    if !all_known {
-        return Ok(Vec::new());
-    }
     let mut drifts: Vec<Vec<Drift>> = vec![Vec::new(); modes.len()];
     let mut table = network.symbols().clone();
     let open = deviation(&mut table);
@@ -137,7 +134,18 @@ fn released(
     for &part in parts {
         let layer = Layer::new(nominals, part, open, budget)?;
         let (above, below) = pairing.expand(&ring, &layer)?;
-        let (above, below) = (Moving::new(&above, open, factor), Moving::new(&below, open, factor));
+        let strange = |side: &Polynomial| {
+            let known = |symbol: &Symbol| *symbol == Symbol::S || *symbol == open;
+            !side.symbols().iter().all(known)
+        };
+        if strange(&above) || strange(&below) {
+            // A part that left the cancelled function has no nominal.
+            return Ok(Vec::new());
+        }
+        let (above, below) = (
+            Moving::new(&above, open, factor),
+            Moving::new(&below, open, factor),
+        );
         for (mode, list) in modes.iter().zip(&mut drifts) {
             let (pole, zero) = (below.shift(mode, budget)?, above.shift(mode, budget)?);
             if pole.norm() == 0.0 && zero.norm() == 0.0 {
@@ -153,11 +161,6 @@ fn released(
         }
     }
     Ok(drifts)
-}
-
-fn has_s(network: &Network, symbol: Symbol) -> bool {
-    let tied = network.set_by(symbol);
-    tied.is_some_and(|id| network.relation(id).has_s())
 }
 
 /// A polynomial in s and the deviation of a part, around a root of multiplicity m.
@@ -180,7 +183,8 @@ impl Moving {
             multiplicity += 1;
         }
         let percent = Rational::new(1.into(), 100.into());
-        let (at_one_percent, _) = polynomial.evaluate(&|symbol| percent.clone().filter(|_| symbol == open));
+        let (at_one_percent, _) =
+            polynomial.evaluate(&|symbol| percent.clone().filter(|_| symbol == open));
         Self {
             still: numbers(&still),
             slope: numbers(&slope),
@@ -194,7 +198,7 @@ impl Moving {
         if self.multiplicity <= 1 {
             let below = value_at(&derivative(&self.still), &mode.centre);
             let above = value_at(&self.slope, &mode.centre);
-            return Ok(-above.div(&below, BITS).to_f64() * PERCENT);
+            return Ok(settled(-above.div(&below, BITS).to_f64() * PERCENT, mode));
         }
         let mut shifts: Vec<Complex<f64>> = Vec::new();
         for root in roots(&self.at_one_percent, budget)? {
@@ -202,7 +206,10 @@ impl Moving {
             shifts.extend(std::iter::repeat_n(shift, root.multiplicity as usize));
         }
         shifts.sort_by(|a, b| a.norm().total_cmp(&b.norm()));
-        let farthest = shifts.into_iter().take(self.multiplicity as usize).next_back();
+        let farthest = shifts
+            .into_iter()
+            .take(self.multiplicity as usize)
+            .next_back();
         Ok(farthest.unwrap_or_default())
     }
 }
@@ -217,9 +224,15 @@ fn coincidental(
 ) -> Result<Vec<Vec<Drift>>, Exceeded> {
     let above = Side::new(&expanded.numerator, nominals, budget)?;
     let below = Side::new(&expanded.denominator, nominals, budget)?;
-    let mut symbols: BTreeSet<Symbol> = it.conditions.iter().flat_map(Polynomial::symbols).collect();
+    let mut symbols: BTreeSet<Symbol> =
+        it.conditions.iter().flat_map(Polynomial::symbols).collect();
     if symbols.is_empty() {
-        symbols = above.slopes.keys().chain(below.slopes.keys()).copied().collect();
+        symbols = above
+            .slopes
+            .keys()
+            .chain(below.slopes.keys())
+            .copied()
+            .collect();
     }
     symbols.remove(&Symbol::S);
     let name = |symbol: Symbol| nominals.network().symbols().name(symbol).to_owned();
@@ -240,11 +253,7 @@ fn coincidental(
 }
 
 /// Residue of the broken pair: the function that is left, at the mode, times the distance.
-fn with_tails(
-    mut drifts: Vec<Vec<Drift>>,
-    modes: &[&Root],
-    reduced: &Quotient,
-) -> Vec<Vec<Drift>> {
+fn with_tails(mut drifts: Vec<Vec<Drift>>, modes: &[&Root], reduced: &Quotient) -> Vec<Vec<Drift>> {
     let settled = reduced.final_value().filter(|value| *value != 0.0);
     for (list, mode) in drifts.iter_mut().zip(modes) {
         let (Some(settled), Some(value)) = (settled, reduced.value(&mode.centre)) else {

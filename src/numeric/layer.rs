@@ -36,7 +36,9 @@ impl<'a> Layer<'a> {
             if symbol != moved {
                 return Ok(Some(value));
             }
-            value.mul(&Fraction::from(one_and.clone()), budget).map(Some)
+            value
+                .mul(&Fraction::from(one_and.clone()), budget)
+                .map(Some)
         };
         for facts in network.all_facts() {
             let tied = network.set_by(facts.symbol);
@@ -47,7 +49,10 @@ impl<'a> Layer<'a> {
                 }
                 continue;
             };
-            let set = relation.sets.iter().find(|(symbol, _)| *symbol == facts.symbol);
+            let set = relation
+                .sets
+                .iter()
+                .find(|(symbol, _)| *symbol == facts.symbol);
             let Some((_, formula)) = set else { continue };
             let mut parameters = BTreeMap::new();
             for parameter in formula.symbols() {
@@ -60,7 +65,15 @@ impl<'a> Layer<'a> {
                 values.insert(facts.symbol, value);
             }
         }
-        values.insert(Symbol::PI, Fraction::from(nominals.value(Symbol::PI).cloned().unwrap_or_else(Rational::zero)));
+        values.insert(
+            Symbol::PI,
+            Fraction::from(
+                nominals
+                    .value(Symbol::PI)
+                    .cloned()
+                    .unwrap_or_else(Rational::zero),
+            ),
+        );
         let mutual = mutuals(network, nominals, moved, deviation, budget)?;
         Ok(Self {
             values,
@@ -120,7 +133,8 @@ impl Values<PolynomialRing<'_>> for Layer<'_> {
 
     fn polynomial(&self, polynomial: &Polynomial) -> Result<(Polynomial, Polynomial), Exceeded> {
         let fraction = Fraction::from(polynomial.clone());
-        let value = fraction.substitute(&|symbol| self.values.get(&symbol).cloned(), self.budget)?;
+        let value =
+            fraction.substitute(&|symbol| self.values.get(&symbol).cloned(), self.budget)?;
         Ok(pair(&value.unwrap_or_else(Fraction::zero)))
     }
 }

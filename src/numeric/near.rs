@@ -47,7 +47,9 @@ impl Near {
     #[must_use]
     pub fn can_meet(&self) -> bool {
         let real = self.pole.im == 0.0 && self.zero.im == 0.0;
-        real && self.over_tolerance.is_some_and(|(low, high)| low <= 0.0 && high >= 0.0)
+        real && self
+            .over_tolerance
+            .is_some_and(|(low, high)| low <= 0.0 && high >= 0.0)
     }
 }
 
@@ -73,7 +75,12 @@ pub fn near(
     }
     let above = Side::new(&expanded.numerator, nominals, budget)?;
     let below = Side::new(&expanded.denominator, nominals, budget)?;
-    let symbols: BTreeSet<Symbol> = above.slopes.keys().chain(below.slopes.keys()).copied().collect();
+    let symbols: BTreeSet<Symbol> = above
+        .slopes
+        .keys()
+        .chain(below.slopes.keys())
+        .copied()
+        .collect();
     let mut found = Vec::new();
     for (pole, zero) in candidates {
         let moves: Vec<Move> = symbols
@@ -90,7 +97,11 @@ pub fn near(
             continue;
         }
         found.push(describe(
-            Pair { pole, zero, between },
+            Pair {
+                pole,
+                zero,
+                between,
+            },
             &moves,
             expanded,
             &quotient,
@@ -198,7 +209,7 @@ impl Side {
         }
         let below = value_at(&derivative(&self.polynomial), &root.centre);
         let above = value_at(slopes, &root.centre);
-        -above.div(&below, BITS).to_f64()
+        settled(-above.div(&below, BITS).to_f64(), root)
     }
 
     /// How far the parts of a root of multiplicity m can go: (m!·Σ|x ∂P/∂x|·tolerance / |P⁽ᵐ⁾|)^(1/m).
@@ -246,6 +257,14 @@ fn chained(own: &Slopes, nominals: &Nominals<'_>) -> Slopes {
         }
     }
     all
+}
+
+/// A shift without the dust that is left where it is 0 and the root is known to its radius only.
+pub(super) fn settled(shift: Complex<f64>, root: &Root) -> Complex<f64> {
+    const DUST: f64 = 1e-20;
+    let size = root.centre.to_f64().norm();
+    let clean = |part: f64| if part.abs() < DUST * size { 0.0 } else { part };
+    Complex::new(clean(shift.re), clean(shift.im))
 }
 
 pub(super) fn derivative(coefficients: &[Big]) -> Vec<Big> {
@@ -308,7 +327,11 @@ fn describe(
     if simple {
         let mut ends = Vec::new();
         for wider in [false, true] {
-            let corner = Corner { pair: &pair, moves, wider };
+            let corner = Corner {
+                pair: &pair,
+                moves,
+                wider,
+            };
             if let Some((pole, zero)) = corner.roots(expanded, nominals, budget)? {
                 ends.push(apart(pole, zero));
             }

@@ -61,11 +61,9 @@ impl<'a> Nominals<'a> {
                 self.number(value)
             });
             let name = format!("M_{}", coupling.name);
-            if let (Some(k), [Some(first), Some(second)], Some(symbol)) = (
-                self.number(k),
-                coils,
-                self.network.symbols().find(&name),
-            ) {
+            if let (Some(k), [Some(first), Some(second)], Some(symbol)) =
+                (self.number(k), coils, self.network.symbols().find(&name))
+            {
                 self.values.insert(symbol, k * root(&(first * second)));
             }
         }
@@ -94,7 +92,10 @@ impl<'a> Nominals<'a> {
 
     /// Names of the symbols of some polynomials that have no nominal.
     #[must_use]
-    pub fn missing<'p>(&self, polynomials: impl IntoIterator<Item = &'p Polynomial>) -> Vec<String> {
+    pub fn missing<'p>(
+        &self,
+        polynomials: impl IntoIterator<Item = &'p Polynomial>,
+    ) -> Vec<String> {
         let mut names = BTreeSet::new();
         for polynomial in polynomials {
             for symbol in polynomial.symbols() {
@@ -185,7 +186,10 @@ pub struct Spread {
 
 /// √value to [`BITS`] bits; exact for squares of short numbers.
 fn root(value: &Rational) -> Rational {
-    let exact = value.numerator().square_root().zip(value.denominator().square_root());
+    let exact = value
+        .numerator()
+        .square_root()
+        .zip(value.denominator().square_root());
     if let Some((above, below)) = exact
         && let Some(root) = Rational::new(above, below)
     {
@@ -204,7 +208,11 @@ fn pi() -> Rational {
         let mut odd = 1_i64;
         while !power.is_zero() {
             let term = power.div_floor(&Integer::from(odd));
-            sum = if odd % 4 == 1 { &sum + &term } else { &sum - &term };
+            sum = if odd % 4 == 1 {
+                &sum + &term
+            } else {
+                &sum - &term
+            };
             power = power.div_floor(&square);
             odd += 2;
         }

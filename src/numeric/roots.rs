@@ -63,12 +63,14 @@ pub fn roots(polynomial: &Polynomial, budget: &Budget) -> Result<Vec<Root>, Exce
     let rest = coefficients.get(zeros as usize..).unwrap_or_default();
     let rest = Polynomial::from_coefficients(Symbol::S, rest);
     for (part, multiplicity) in square_free(&rest.primitive(), budget)? {
-        for (centre, radius) in simple_roots(&part, budget)? {
-            found.push(Root {
-                centre,
-                radius,
-                multiplicity,
-            });
+        for symmetric in by_symmetry(&part, budget)? {
+            for (centre, radius) in simple_roots(&symmetric, budget)? {
+                found.push(Root {
+                    centre,
+                    radius,
+                    multiplicity,
+                });
+            }
         }
     }
     found.sort_by(|a, b| {
@@ -108,6 +110,26 @@ fn square_free(
     Ok(parts)
 }
 
+/// The part whose roots are those of p(s) and of p(−s) as well, and the rest. Roots on the imaginary
+/// axis are all in the first, which is even.
+fn by_symmetry(polynomial: &Polynomial, budget: &Budget) -> Result<Vec<Polynomial>, Exceeded> {
+    let mirrored: Vec<Polynomial> = polynomial
+        .coefficients(Symbol::S)
+        .into_iter()
+        .enumerate()
+        .map(|(power, it)| if power % 2 == 0 { it } else { -it })
+        .collect();
+    let mirrored = Polynomial::from_coefficients(Symbol::S, &mirrored);
+    let even = gcd(polynomial, &mirrored, budget)?;
+    if even.degree(Symbol::S) == 0 {
+        return Ok(vec![polynomial.clone()]);
+    }
+    let rest = polynomial.div_exact(&even).unwrap_or_else(Polynomial::one);
+    let mut parts = vec![even, rest];
+    parts.retain(|part| part.degree(Symbol::S) > 0);
+    Ok(parts)
+}
+
 /// Centre and radius of each root of a square-free polynomial that does not vanish at 0.
 fn simple_roots(
     polynomial: &Polynomial,
@@ -129,6 +151,11 @@ fn simple_roots(
     while precision <= MOST_BITS {
         iterate(&coefficients, &mut points, precision, budget)?;
         if precision > 64 {
+            if is_even(&coefficients) {
+                points
+                    .iter_mut()
+                    .for_each(|point| near_axis(point, precision));
+            }
             let snapped = conjugate_pairs(&points);
             if let Some(discs) = snapped.and_then(|centres| proven(&coefficients, centres)) {
                 return Ok(discs);
@@ -137,6 +164,23 @@ fn simple_roots(
         precision *= 2;
     }
     Err(Exceeded::Bits(MOST_BITS))
+}
+
+fn is_even(coefficients: &[Big]) -> bool {
+    coefficients.iter().skip(1).step_by(2).all(Big::is_zero)
+}
+
+/// Puts a point beside the imaginary axis on it. A disc that is symmetric to the axis holds the mirror
+/// image of its root too; where it holds one root of an even polynomial, that root is on the axis.
+fn near_axis(point: &mut BigComplex, precision: u64) {
+    let margin = i64::try_from(precision / 2).unwrap_or(0);
+    let beside = match (point.re.magnitude(), point.im.magnitude()) {
+        (Some(re), Some(im)) => re < im - margin,
+        _ => false,
+    };
+    if beside {
+        point.re = Big::zero();
+    }
 }
 
 /// Points on the circles of the Newton polygon: an edge from k to l of the upper hull of log|a| stands
@@ -163,8 +207,7 @@ fn starts(coefficients: &[Big]) -> Vec<BigComplex> {
         let mut turn = 0.0;
         while turn < count {
             // An angle that is symmetric to no axis keeps the points apart from their conjugates.
-            let angle =
-                std::f64::consts::TAU * turn / count + 0.7 + 0.31 * index_to_f64(edge);
+            let angle = std::f64::consts::TAU * turn / count + 0.7 + 0.31 * index_to_f64(edge);
             let unit = part.exp2();
             let place = |value: f64| Big::from_f64(unit * value).shift(float_to_exponent(whole));
             points.push(BigComplex {
@@ -403,6 +446,20 @@ mod tests {
         for ((root, _), (re, im)) in found.iter().zip(expected) {
             assert_eq!((root.re, root.im), (re, im));
         }
+    }
+
+    #[test]
+    fn roots_on_the_imaginary_axis_are_exactly_there() {
+        // (s² + 2)(s² + 3)²(s + 1)(s² − 5)
+        let s = Polynomial::symbol(Symbol::S);
+        let plus = |number: i64| &(&s * &s) + &Polynomial::constant(number);
+        let step = &s + &Polynomial::one();
+        let polynomial = &(&(&plus(2) * &plus(3).pow(2)) * &step) * &plus(-5);
+        let found = found(&polynomial);
+        let on_axis: Vec<_> = found.iter().filter(|(root, _)| root.im != 0.0).collect();
+        assert_eq!(on_axis.len(), 4);
+        assert!(on_axis.iter().all(|(root, _)| root.re == 0.0));
+        assert_eq!(found.iter().map(|(_, count)| count).sum::<u32>(), 9);
     }
 
     #[test]

@@ -3,6 +3,7 @@
 use crate::analysis::report::{FunctionReport, Report};
 use crate::diagnostic::Diagnostic;
 use crate::network::{ElementId, Network, Question, RelationId};
+use crate::numeric::FunctionFigures;
 use crate::render::names::{FrequencyPlace, Names};
 use crate::source::{SourceId, Sources};
 
@@ -44,6 +45,8 @@ pub struct Answer<'a> {
     pub network: &'a Network,
     /// All findings.
     pub report: &'a Report,
+    /// Figures at the nominals, one for each result; empty where they were not asked for.
+    pub figures: &'a [FunctionFigures],
     /// Warnings from reading the text, in file order.
     pub warnings: &'a [Diagnostic],
     /// Which findings are shown.
@@ -63,6 +66,16 @@ impl<'a> Answer<'a> {
     #[must_use]
     pub fn names(&self, frequency: FrequencyPlace) -> Names<'a> {
         Names::new(self.network, frequency)
+    }
+
+    /// The figures of a result, where they were asked for.
+    #[must_use]
+    pub fn figures_of(&self, result: &FunctionReport) -> Option<&'a FunctionFigures> {
+        let results = self.report.results.iter();
+        let index = results
+            .take_while(|it| it.question != result.question)
+            .count();
+        self.figures.get(index)
     }
 
     /// The question behind a result.

@@ -1,5 +1,7 @@
 //! The JSON of the answers. Expressions are strings in the syntax of the language, integers exact.
 
+mod numbers;
+
 use serde_json::{Map, Value, json};
 
 use crate::algebra::Polynomial;
@@ -10,6 +12,7 @@ use crate::analysis::report::{
 };
 use crate::diagnostic::Diagnostic;
 use crate::network::CancellationClass;
+use crate::numeric::drift::Cancelled;
 use crate::render::answer::{Answer, Detail};
 use crate::render::character;
 use crate::render::form;
@@ -127,8 +130,19 @@ fn result(answer: &Answer<'_>, result: &FunctionReport) -> Value {
     if answer.detail == Detail::Audit
         && let Some(list) = &result.cancellations
     {
-        let list = list.iter().map(|it| cancellation(answer, it, &names));
+        let figures = answer.figures_of(result);
+        let numbers = |index: usize| figures.and_then(|it| it.cancelled.get(index));
+        let list = list.iter().enumerate();
+        let list = list.map(|(index, it)| cancellation(answer, it, numbers(index), &names));
         object.insert("cancellations".into(), list.collect());
+    }
+    if let Some(figures) = answer.figures_of(result)
+        && figures.quotient.is_some()
+    {
+        object.insert(
+            "near".into(),
+            figures.near.iter().map(numbers::near).collect(),
+        );
     }
     if !result.relied_on.is_empty() {
         object.insert("relied_on".into(), json!(result.relied_on));
@@ -307,7 +321,12 @@ fn drop(drop: &Drop, names: &Names<'_>) -> Value {
     })
 }
 
-fn cancellation(answer: &Answer<'_>, it: &Cancellation, names: &Names<'_>) -> Value {
+fn cancellation(
+    answer: &Answer<'_>,
+    it: &Cancellation,
+    figures: Option<&Cancelled>,
+    names: &Names<'_>,
+) -> Value {
     let mut object = Object::new();
     object.insert("class".into(), json!(sentence::class(it.class)));
     object.insert("factor".into(), json!(expression(&it.factor, names)));
@@ -330,6 +349,9 @@ fn cancellation(answer: &Answer<'_>, it: &Cancellation, names: &Names<'_>) -> Va
     }
     if !it.factored {
         object.insert("factored".into(), json!(false));
+    }
+    if let Some(figures) = figures {
+        numbers::insert_cancelled(&mut object, figures);
     }
     Value::Object(object)
 }

@@ -7,8 +7,10 @@ pub mod answer;
 pub mod character;
 pub mod coefficients;
 pub mod designer;
+pub mod engineering;
 #[cfg(test)]
 mod exactness;
+pub mod figures;
 pub mod form;
 pub mod json;
 pub mod latex;

@@ -26,6 +26,7 @@ impl Bench {
             sources: &self.sources,
             network: &self.network,
             report: &self.report,
+            figures: &[],
             warnings: &[],
             detail,
             style: FormStyle::default(),

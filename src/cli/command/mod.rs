@@ -102,6 +102,7 @@ fn wanted(detail: Detail, format: Format, of: &[String]) -> Wanted {
         formulas: matches!(detail, Detail::Formula | Detail::Audit),
         forms: matches!(detail, Detail::Formula | Detail::Audit),
         claims: detail == Detail::Claims,
+        figures: detail == Detail::Audit,
         cancellations: match detail {
             Detail::Audit => true,
             Detail::Order => format != Format::Json,

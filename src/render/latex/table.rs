@@ -1,7 +1,9 @@
 //! Accounts and cancellations as tables.
 
 use crate::analysis::report::FunctionReport;
+use crate::numeric::FunctionFigures;
 use crate::render::answer::Answer;
+use crate::render::figures;
 use crate::render::latex::escape::{escape, name};
 use crate::render::latex::spell::spell;
 use crate::render::ledger::{self, Between, Evidence, Line};
@@ -69,19 +71,23 @@ fn spell_evidence(evidence: &Evidence) -> String {
 
 /// What cancels in one function; empty for functions of functions.
 pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> String {
+    let figures = answer.figures_of(result);
     let list = match &result.cancellations {
         None => {
             let words = sentence::uncancelled(result);
             return words.map_or_else(String::new, |words| format!("{words}\n"));
         }
         Some(list) if list.is_empty() => {
-            return format!("Nothing cancels in ${}$.\n", name(&result.name));
+            let words = format!("Nothing cancels in ${}$.\n", name(&result.name));
+            return words + &near(figures);
         }
         Some(list) => list,
     };
     let names = answer.names(FrequencyPlace::First);
     let mut rows = String::new();
-    for it in list {
+    let mut drifts = String::new();
+    for (index, it) in list.iter().enumerate() {
+        let numbers = figures.and_then(|figures| figures.cancelled.get(index));
         let factor = math::by_powers_of_s(&it.factor, &names).power(it.multiplicity);
         let hides = it.hides.map(sentence::hides).unwrap_or_default();
         let front = format!(
@@ -89,7 +95,37 @@ pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> Str
             sentence::class(it.class),
             spell(&factor)
         );
-        rows.push_str(&with_evidence(&front, &ledger::cause(answer, it)));
+        let mut evidence = ledger::cause(answer, it);
+        evidence.extend(numbers.and_then(figures::modes).map(Evidence::Clause));
+        rows.push_str(&with_evidence(&front, &evidence));
+        if let Some(numbers) = numbers {
+            let lists = numbers.drifts.iter();
+            drifts.extend(
+                lists
+                    .filter_map(|list| figures::drifts(list))
+                    .map(drift_table),
+            );
+        }
     }
-    format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n")
+    let near = near(figures);
+    format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n{drifts}{near}")
+}
+
+/// What one per cent of a part does to a cancelled pair.
+fn drift_table(rows: Vec<[String; 4]>) -> String {
+    let row = |cells: &[String; 4]| {
+        let cells: Vec<String> = cells.iter().map(|cell| escape(cell)).collect();
+        format!("  {} \\\\\n", cells.join(" & "))
+    };
+    let rows: String = rows.iter().map(row).collect();
+    format!("\n\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n")
+}
+
+/// Pairs that almost cancel, a paragraph each.
+fn near(figures: Option<&FunctionFigures>) -> String {
+    let pairs = figures.map_or(&[][..], |figures| &figures.near);
+    let upper = pairs.iter().filter(|it| it.pole.im >= 0.0);
+    upper
+        .map(|it| format!("\nNear: {}.\n", escape(&figures::near(it).join("; "))))
+        .collect()
 }

@@ -1,7 +1,10 @@
 //! What cancels between numerator and denominator, and why.
 
 use crate::analysis::report::{Cancellation, FunctionReport, Hides};
+use crate::numeric::FunctionFigures;
+use crate::numeric::drift::Cancelled;
 use crate::render::answer::Answer;
+use crate::render::figures;
 use crate::render::ledger::{self, Evidence};
 use crate::render::math;
 use crate::render::names::FrequencyPlace;
@@ -21,12 +24,17 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
             None => String::new(),
         };
     };
+    let figures = answer.figures_of(result);
     let mut text = String::new();
     if list.is_empty() && !result.zero {
         text.push_str("  Nothing cancels.\n");
     }
-    for it in list {
-        text.push_str(&cancellation(answer, it, page));
+    for (index, it) in list.iter().enumerate() {
+        let numbers = figures.and_then(|figures| figures.cancelled.get(index));
+        text.push_str(&cancellation(answer, it, numbers, page));
+    }
+    if let Some(figures) = figures {
+        text.push_str(&near(figures, page));
     }
     if !result.nominals_missing.is_empty() {
         let mut items = result.nominals_missing.clone();
@@ -41,8 +49,63 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
     text
 }
 
-fn cancellation(answer: &Answer<'_>, it: &Cancellation, page: &Page) -> String {
-    const COLUMN: usize = 17;
+/// Pairs that almost cancel.
+fn near(figures: &FunctionFigures, page: &Page) -> String {
+    let upper = figures.near.iter().filter(|it| it.pole.im >= 0.0);
+    let mut text = String::new();
+    for it in upper {
+        let mut front = format!("{:<COLUMN$}", "  near");
+        for (index, clause) in figures::near(it).into_iter().enumerate() {
+            for line in evidence_lines(&Evidence::Clause(clause), page.width - COLUMN) {
+                let line = match index {
+                    0 => line,
+                    _ => Paint(page.colour).quiet(&line),
+                };
+                text.push_str(&format!("{front}{line}\n"));
+                front = " ".repeat(COLUMN);
+            }
+        }
+    }
+    text
+}
+
+/// What one per cent of a part does to a cancelled pair.
+fn drifts(numbers: &Cancelled, page: &Page) -> String {
+    let paint = Paint(page.colour);
+    let mut text = String::new();
+    for rows in numbers
+        .drifts
+        .iter()
+        .filter_map(|list| figures::drifts(list))
+    {
+        let mut widths = [0; 4];
+        for row in &rows {
+            for (width, cell) in widths.iter_mut().zip(row) {
+                *width = (*width).max(columns(cell));
+            }
+        }
+        for row in &rows {
+            let mut line = String::new();
+            for (width, cell) in widths.iter().zip(row) {
+                line.push_str(cell);
+                line.push_str(&" ".repeat(width + 3 - columns(cell)));
+            }
+            let line = paint.quiet(line.trim_end());
+            text.push_str(&format!("{}{line}\n", " ".repeat(COLUMN)));
+        }
+    }
+    text
+}
+
+/// Where the words about a cancellation begin.
+const COLUMN: usize = 17;
+
+fn cancellation(
+    answer: &Answer<'_>,
+    it: &Cancellation,
+    numbers: Option<&Cancelled>,
+    page: &Page,
+) -> String {
     let names = answer.names(FrequencyPlace::First);
     let factor = math::by_powers_of_s(&it.factor, &names).power(it.multiplicity);
     let mut text = format!("  {}", sentence::class(it.class));
@@ -64,11 +127,15 @@ fn cancellation(answer: &Answer<'_>, it: &Cancellation, page: &Page) -> String {
             "a product that was not split into its factors",
         ));
     }
+    clauses.extend(numbers.and_then(figures::modes).map(Evidence::Clause));
     for clause in clauses {
         for line in evidence_lines(&clause, page.width - COLUMN) {
             let line = Paint(page.colour).quiet(&line);
             text.push_str(&format!("{}{line}\n", " ".repeat(COLUMN)));
         }
+    }
+    if let Some(numbers) = numbers {
+        text.push_str(&drifts(numbers, page));
     }
     text
 }
