@@ -164,6 +164,7 @@ impl Exceeded {
         match self {
             Self::Terms(limit) => format!("--budget terms={}", limit.saturating_mul(10).max(10)),
             Self::States(limit) => format!("--budget states={}", limit.saturating_mul(10).max(10)),
+            Self::Bits(_) => "other nominal values, --set NAME=VALUE".to_owned(),
             Self::Time(limit) => {
                 format!(
                     "--budget seconds={}",

@@ -33,6 +33,14 @@ fn shows_true_answers() {
 }
 
 #[test]
+fn shows_a_near_pair() {
+    let readme = include_str!("../README.md");
+    let found = answer(&["audit", "--of", "Hm", "examples/half_supply.cutloop"]);
+    let last = found.trim_end().rsplit("\n\n").next().expect("a section");
+    assert!(last.contains("near") && readme.contains(last), "{found}");
+}
+
+#[test]
 fn shows_the_example_it_runs() {
     let readme = include_str!("../README.md");
     assert!(readme.contains(include_str!("../examples/antialias_filter.cutloop").trim()));

@@ -1,6 +1,6 @@
 //! Everything a run asks, in order: network, functions, claims.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use crate::algebra::{Fraction, Polynomial, Symbol, SymbolTable};
 use crate::analysis::cancellation::{audit, whole};
@@ -11,17 +11,19 @@ use crate::analysis::effect;
 use crate::analysis::form::{Forms, forms};
 use crate::analysis::functions;
 use crate::analysis::knowledge::Knowledge;
+use crate::analysis::meaning;
 use crate::analysis::nest::nested;
 use crate::analysis::normal::leading_sign;
 use crate::analysis::order::ledger;
 use crate::analysis::relations::Substitution;
 use crate::analysis::report::{
-    Expanded, Failure, Formula, FunctionReport, NetworkOrder, Report, Wanted,
+    ClaimReport, Drop, Expanded, Failure, Formula, FunctionReport, NetworkOrder, Report, Verdict,
+    Wanted,
 };
 use crate::analysis::solve::{Setting, Solved, natural_polynomial, network_degrees, solve};
 use crate::analysis::witness;
 use crate::budget::{Budget, Exceeded};
-use crate::diagnostic::Diagnostic;
+use crate::diagnostic::{Diagnostic, Severity};
 use crate::network::{Ask, Assertion, Network};
 
 /// Terms of a formula that nobody asked for; it still tells where the order drops.
@@ -112,6 +114,8 @@ fn undecided_function(network: &Network, index: usize, exceeded: Exceeded) -> Fu
         zero: false,
         no_effect: Vec::new(),
         drops_when: Vec::new(),
+        origin_when: Vec::new(),
+        audit_cut: None,
         cancellations: None,
         nominals_missing: Vec::new(),
         relied_on: Vec::new(),
@@ -165,10 +169,10 @@ impl Run<'_> {
         if !errors.is_empty() {
             return Err(Failure::Unusable(errors));
         }
-        let claims = if wanted.claims {
+        let (claims, warnings) = if wanted.claims {
             self.claims(&known, &reports)?
         } else {
-            Vec::new()
+            (Vec::new(), Vec::new())
         };
         let mut results: Vec<FunctionReport> = reports
             .into_iter()
@@ -185,7 +189,7 @@ impl Run<'_> {
             order: self.order.clone(),
             results,
             claims,
-            warnings: Vec::new(),
+            warnings,
         })
     }
 
@@ -213,6 +217,8 @@ impl Run<'_> {
             zero: degrees.zero,
             no_effect: Vec::new(),
             drops_when: Vec::new(),
+            origin_when: Vec::new(),
+            audit_cut: None,
             cancellations: Some(Vec::new()),
             nominals_missing: Vec::new(),
             relied_on: Vec::new(),
@@ -237,7 +243,10 @@ impl Run<'_> {
                 report.nominals_missing = audited.nominals_missing;
                 report.cancellations = Some(audited.cancellations);
             }
-            Err(_) => report.cancellations = whole(&self.setting, self.table, solved),
+            Err(exceeded) => {
+                report.audit_cut = Some(exceeded);
+                report.cancellations = whole(&self.setting, self.table, solved);
+            }
         }
         // A part of a factor that cancels has its place there.
         if report.cancellations.is_some() || report.hidden == Some(0) {
@@ -297,19 +306,22 @@ impl Run<'_> {
         let Some(leading) = expanded.denominator.last() else {
             return;
         };
-        let found = drops(
-            leading,
-            &self.knowledge,
-            self.setting.network.symbols(),
-            self.setting.budget,
-        );
-        match found {
-            Ok((conditions, relied_on)) => {
-                report.drops_when = conditions;
-                report.relied_on = relied_on.into_iter().collect();
-            }
-            Err(_) => report.drops_when = vec![undecided(leading, self.table)],
+        let (conditions, mut relied_on) = self.vanishing(leading);
+        report.drops_when = conditions;
+        let lowest = expanded.denominator.iter().find(|part| !part.is_zero());
+        if let Some(lowest) = lowest.filter(|_| report.order > 0) {
+            let (conditions, more) = self.vanishing(lowest);
+            report.origin_when = conditions;
+            relied_on.extend(more);
         }
+        report.relied_on = relied_on.into_iter().collect();
+    }
+
+    /// Where a coefficient vanishes, with what the proofs rest on.
+    fn vanishing(&self, coefficient: &Polynomial) -> (Vec<Drop>, BTreeSet<String>) {
+        let names = self.setting.network.symbols();
+        drops(coefficient, &self.knowledge, names, self.setting.budget)
+            .unwrap_or_else(|_| (vec![undecided(coefficient, self.table)], BTreeSet::new()))
     }
 
     /// A function as it is written: without roots, coprime with numbers, leading sign positive.
@@ -360,8 +372,12 @@ impl Run<'_> {
         &self,
         known: &BTreeMap<Symbol, Fraction>,
         reports: &[FunctionReport],
-    ) -> Result<Vec<crate::analysis::report::ClaimReport>, Failure> {
+    ) -> Result<(Vec<ClaimReport>, Vec<Diagnostic>), Failure> {
         let network = self.setting.network;
+        let meaningless = meaning::meaningless(network, reports);
+        if !meaningless.is_empty() {
+            return Err(Failure::Unusable(meaningless));
+        }
         let report_of = |symbol: Symbol| {
             let index = network.question_of(symbol)?;
             reports.iter().find(|report| report.question == index)
@@ -384,10 +400,21 @@ impl Run<'_> {
             report: &report_of,
             budget: self.setting.budget,
         };
-        let mut claims = Vec::new();
+        let (mut claims, mut warnings) = (Vec::new(), Vec::new());
         for (index, claim) in network.claims().iter().enumerate() {
-            claims.push(evidence.decide(index, claim)?);
+            let decided = evidence.decide(index, claim)?;
+            if decided.holds == Verdict::Yes && evidence.at_terminals_only(claim)? {
+                let message = "stable at the terminals only: the network has a natural frequency \
+                               that grows and does not show here";
+                let warning = Diagnostic {
+                    severity: Severity::Warning,
+                    ..Diagnostic::error(claim.place, message)
+                        .help("claim stable(network) says under which conditions it does not grow")
+                };
+                warnings.push(warning);
+            }
+            claims.push(decided);
         }
-        Ok(claims)
+        Ok((claims, warnings))
     }
 }

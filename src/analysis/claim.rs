@@ -1,6 +1,6 @@
 //! Claims proven or refuted by exact means.
 
-use crate::algebra::{Fraction, Polynomial, Rational, Symbol};
+use crate::algebra::{Fraction, Integer, Monomial, Polynomial, Rational, Symbol};
 use crate::analysis::couplings::Couplings;
 use crate::analysis::knowledge::Knowledge;
 use crate::analysis::relations::Substitution;
@@ -9,7 +9,9 @@ use crate::analysis::report::{
 };
 use crate::analysis::stability::decide;
 use crate::budget::{Budget, Exceeded};
-use crate::network::{Assertion, CancellationClass, Claim, ClaimedValue, Network, Side, Subject};
+use crate::network::{
+    Ask, Assertion, CancellationClass, Claim, ClaimedValue, Network, Side, Subject,
+};
 
 /// What claims are held against.
 pub(crate) struct Evidence<'a> {
@@ -134,7 +136,10 @@ impl Evidence<'_> {
         let mut findings = vec![
             self.formula("claimed", &claimed),
             self.formula("found", &found),
-            self.formula("difference", &difference),
+            Finding {
+                as_product: true,
+                ..self.formula("difference", &difference)
+            },
         ];
         findings.extend(self.counterexample(&claimed, &found, &difference));
         Ok((Verdict::No, findings))
@@ -189,6 +194,7 @@ impl Evidence<'_> {
             label: label.to_owned(),
             text: None,
             formula: Some(pair),
+            as_product: false,
         }
     }
 
@@ -301,6 +307,7 @@ impl Evidence<'_> {
             label: word.to_owned(),
             text: None,
             formula: Some((polynomial.clone(), Polynomial::one())),
+            as_product: false,
         });
         if let Some(at) = at {
             findings.push(self.formula(&format!("{word} there"), &at));
@@ -358,6 +365,7 @@ impl Evidence<'_> {
                 label: "only where positive".to_owned(),
                 text: None,
                 formula: Some((condition.clone(), Polynomial::one())),
+                as_product: false,
             });
         }
         if !found.example.is_empty() {
@@ -386,10 +394,43 @@ impl Evidence<'_> {
         ))
     }
 
-    fn cancels(&self, function: Symbol, claimed: &[CancellationClass]) -> Decision {
-        let Some(found) = (self.report)(function).and_then(|report| report.cancellations.as_ref())
+    /// Whether a function that is proven stable stands in a network with a mode that grows: what a
+    /// formula does not show.
+    pub(crate) fn at_terminals_only(&self, claim: &Claim) -> Result<bool, Exceeded> {
+        let Assertion::Stable {
+            subject: Subject::Function(function),
+            within_tolerance,
+        } = claim.assertion
         else {
-            return not_known();
+            return Ok(false);
+        };
+        let question = self.network.question_of(function);
+        let question = question.map(|index| &self.network.questions()[index]);
+        let of_whole_network = question.is_some_and(|it| {
+            it.without.is_empty() && matches!(it.ask, Ask::Transfer { .. } | Ask::Impedance(_))
+        });
+        let Some(natural) = self.natural.filter(|_| of_whole_network) else {
+            return Ok(false);
+        };
+        // Charge that stays is no mode that grows.
+        let moving = Monomial::power(Symbol::S, natural.valuation(Symbol::S));
+        let moving = natural.div_exact(&Polynomial::monomial(Integer::one(), moving));
+        let narrowed;
+        let knowledge = if within_tolerance {
+            narrowed = self.knowledge.within_tolerance();
+            &narrowed
+        } else {
+            self.knowledge
+        };
+        let moving = moving.unwrap_or_else(Polynomial::one);
+        Ok(decide(&moving, knowledge, self.budget)?.verdict == Verdict::No)
+    }
+
+    fn cancels(&self, function: Symbol, claimed: &[CancellationClass]) -> Decision {
+        let told_apart = (self.report)(function).filter(|report| report.audit_cut.is_none());
+        let Some(found) = told_apart.and_then(|report| report.cancellations.as_ref()) else {
+            let text = "the factors were not told apart within the budget";
+            return (Verdict::Undecided, vec![note("not decided", text)]);
         };
         let classes = classes(found);
         if classes == claimed {
@@ -407,6 +448,7 @@ impl Evidence<'_> {
                 label: format!("{} factor", class_word(cancellation.class)),
                 text: None,
                 formula: Some((cancellation.factor.clone(), Polynomial::one())),
+                as_product: false,
             });
         }
         (Verdict::No, findings)
@@ -489,5 +531,6 @@ fn note(label: impl Into<String>, text: impl Into<String>) -> Finding {
         label: label.into(),
         text: Some(text.into()),
         formula: None,
+        as_product: false,
     }
 }

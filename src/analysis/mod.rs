@@ -18,6 +18,7 @@ mod functions;
 mod hidden;
 mod knowledge;
 mod line;
+mod meaning;
 mod nest;
 pub mod normal;
 pub mod order;

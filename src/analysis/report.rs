@@ -118,8 +118,12 @@ pub struct FunctionReport {
     pub no_effect: Vec<NoEffect>,
     /// Conditions at which the order is lower.
     pub drops_when: Vec<Drop>,
+    /// Conditions at which a pole goes to s = 0: the lowest coefficient of the denominator vanishes.
+    pub origin_when: Vec<Drop>,
     /// What cancels between numerator and denominator; `None` for functions of functions.
     pub cancellations: Option<Vec<Cancellation>>,
+    /// The budget that was reached before all cancellations were told apart.
+    pub audit_cut: Option<Exceeded>,
     /// Names of symbols with a nominal missing, when coincidental cancellations were not looked for.
     pub nominals_missing: Vec<String>,
     /// Signs and assumptions that were used, as text.
@@ -257,6 +261,8 @@ pub struct Finding {
     pub text: Option<String>,
     /// A quotient of polynomials.
     pub formula: Option<(Polynomial, Polynomial)>,
+    /// Whether its sides are to be written as products of their factors.
+    pub as_product: bool,
 }
 
 /// What a run is to answer.

@@ -126,9 +126,9 @@ impl Case {
     pub(super) fn exit(&self, wanted: &Wanted) -> Exit {
         match &self.outcome {
             Ok(solved) if solved.figures_cut => {
-                Exit::of_report(&solved.report, wanted.formulas).max(Exit::Undecided)
+                Exit::of_report(&solved.report, wanted).max(Exit::Undecided)
             }
-            Ok(solved) => Exit::of_report(&solved.report, wanted.formulas),
+            Ok(solved) => Exit::of_report(&solved.report, wanted),
             Err(unsolved) => unsolved.exit,
         }
     }

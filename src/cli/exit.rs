@@ -2,7 +2,7 @@
 
 use std::process::ExitCode;
 
-use crate::analysis::report::{Failure, Formula, Report, Verdict};
+use crate::analysis::report::{Failure, Formula, Report, Verdict, Wanted};
 
 /// How a run ended. The order is by weight: of several files the heaviest decides.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -35,16 +35,19 @@ impl Exit {
         }
     }
 
-    /// What a report amounts to. Formulas count where they were asked for.
+    /// What a report amounts to. Formulas and cancellations count where they were asked for.
     #[must_use]
-    pub fn of_report(report: &Report, formulas: bool) -> Self {
+    pub fn of_report(report: &Report, wanted: &Wanted) -> Self {
         let claims = report.claims.iter().map(|claim| match claim.holds {
             Verdict::Yes => Self::Answered,
             Verdict::No => Self::Refuted,
             Verdict::Undecided => Self::Undecided,
         });
         let results = report.results.iter().map(|result| match result.formula {
-            Formula::OverBudget(_) if formulas || !result.degrees_known() => Self::Undecided,
+            Formula::OverBudget(_) if wanted.formulas || !result.degrees_known() => Self::Undecided,
+            _ if wanted.formulas && wanted.cancellations && result.audit_cut.is_some() => {
+                Self::Undecided
+            }
             _ => Self::Answered,
         });
         claims.chain(results).max().unwrap_or(Self::Answered)

@@ -75,8 +75,10 @@ pub(super) fn cancelled(
             released(&parts, &factor, &upper, result, nominals, budget)?
         }
         CancellationClass::Coincidental => match expanded {
-            Some(expanded) => coincidental(it, &upper, expanded, nominals, budget)?,
-            None => Vec::new(),
+            Some(expanded) if simple(&factor, quotient) => {
+                coincidental(it, &upper, expanded, nominals, budget)?
+            }
+            _ => Vec::new(),
         },
     };
     let drifts = match quotient {
@@ -84,6 +86,18 @@ pub(super) fn cancelled(
         None => drifts,
     };
     Ok(Cancelled { modes, drifts })
+}
+
+/// Whether a factor stands once on each side: slopes of multiple roots are infinite.
+fn simple(factor: &Polynomial, quotient: Option<&Quotient>) -> bool {
+    let Some(quotient) = quotient else {
+        return false;
+    };
+    let once = |side: &Polynomial| {
+        let rest = side.div_exact(factor);
+        rest.is_some_and(|rest| rest.div_exact(factor).is_none())
+    };
+    once(&quotient.numerator) && once(&quotient.denominator)
 }
 
 /// Parts, options and parameters that stand in the relations a matched factor rests on.
@@ -264,7 +278,7 @@ fn with_tails(mut drifts: Vec<Vec<Drift>>, modes: &[&Root], reduced: &Quotient) 
             continue;
         }
         let sides = if mode.is_real() { 1.0 } else { 2.0 };
-        for drift in list {
+        for drift in list.iter_mut().filter(|drift| !drift.splits) {
             let size = sides * (value * (drift.pole - drift.zero) / place).norm();
             drift.tail = Some(size / settled.abs());
         }

@@ -58,7 +58,9 @@ pub(super) type Slopes = BTreeMap<Symbol, Vec<Big>>;
 
 /// The pairs of a function, by the size of the pole.
 ///
-/// The bound is that of first order: the pair is near where |p − z| ≤ Σ |∂(p − z)/∂ln x|·tolerance(x).
+/// The bound is that of first order: a pair is near where |p − z| is no more than what the tolerances
+/// move p, or z, or both against each other: Σ |∂p/∂ln x|·tolerance(x), and so for z and p − z. Where
+/// parts move both alike the pair stays apart, and is still a doublet with a slow tail.
 ///
 /// # Errors
 /// When the budget is reached.
@@ -280,7 +282,7 @@ fn widest(nominals: &Nominals<'_>, symbol: Symbol) -> f64 {
     Big::from_rational(&widest, 64).to_f64()
 }
 
-/// How far the tolerances can move pole and zero against each other, to first order.
+/// How far the tolerances can move pole or zero, or both against each other, to first order.
 fn reach(
     below: &Side,
     pole: &Root,
@@ -291,11 +293,15 @@ fn reach(
 ) -> f64 {
     let multiple =
         below.spread_of_multiple(pole, nominals) + above.spread_of_multiple(zero, nominals);
-    let simple: f64 = moves
-        .iter()
-        .map(|it| (it.pole - it.zero).norm() * widest(nominals, it.symbol))
-        .sum();
-    multiple + simple
+    let sum = |shift: &dyn Fn(&Move) -> Complex<f64>| -> f64 {
+        let moves = moves.iter();
+        moves
+            .map(|it| shift(it).norm() * widest(nominals, it.symbol))
+            .sum()
+    };
+    let against = sum(&|it| it.pole - it.zero);
+    let alone = sum(&|it| it.pole).max(sum(&|it| it.zero));
+    multiple + against.max(alone)
 }
 
 struct Pair<'a> {
@@ -361,6 +367,9 @@ fn describe(
     })
 }
 
+/// Pole and zero.
+type Places = (Complex<f64>, Complex<f64>);
+
 /// The corner of the tolerances that moves a pair most, apart or together.
 struct Corner<'a> {
     pair: &'a Pair<'a>,
@@ -388,7 +397,7 @@ impl Corner<'_> {
         expanded: &Expanded,
         nominals: &Nominals<'_>,
         budget: &Budget,
-    ) -> Result<Option<(Complex<f64>, Complex<f64>)>, Exceeded> {
+    ) -> Result<Option<Places>, Exceeded> {
         let mut values: BTreeMap<Symbol, Rational> = BTreeMap::new();
         let (mut pole, mut zero) = (
             self.pair.pole.centre.to_f64(),

@@ -1,4 +1,5 @@
-//! Numbers as an engineer writes them: three significant digits, SI prefixes.
+//! Numbers as an engineer writes them: three significant digits, SI prefixes. Blanks inside a number
+//! with its unit do not break; writers make of them what their page needs.
 
 use nalgebra::Complex;
 
@@ -34,13 +35,28 @@ pub fn quantity(value: f64, unit: &str) -> String {
             let blank = if unit.is_empty() && prefix.is_empty() {
                 ""
             } else {
-                " "
+                "\u{a0}"
             };
             format!("{sign}{number}{blank}{prefix}{unit}")
         }
-        None => format!("{sign}{}e{exponent} {unit}", placed(&digits, 0))
+        None => format!("{sign}{}e{exponent}\u{a0}{unit}", placed(&digits, 0))
             .trim_end()
             .to_owned(),
+    }
+}
+
+/// `0.0227`, `−53.2`, `1.20e-7`.
+#[must_use]
+pub fn plain(value: f64) -> String {
+    if value == 0.0 {
+        return "0".to_owned();
+    }
+    let (digits, exponent) = significant(value);
+    let sign = if value < 0.0 { "−" } else { "" };
+    if (-4..6).contains(&exponent) {
+        format!("{sign}{}", placed(&digits, exponent))
+    } else {
+        format!("{sign}{}e{exponent}", placed(&digits, 0))
     }
 }
 
@@ -49,17 +65,17 @@ pub fn quantity(value: f64, unit: &str) -> String {
 pub fn percent(fraction: f64) -> String {
     let value = fraction * 100.0;
     if value == 0.0 {
-        return "0 %".to_owned();
+        return "0\u{a0}%".to_owned();
     }
     if value.abs() < 0.001 {
-        return "less than 0.001 %".to_owned();
+        return "less than 0.001\u{a0}%".to_owned();
     }
     if value.abs() >= 999.5 {
-        return "more than 1000 %".to_owned();
+        return "more than 1000\u{a0}%".to_owned();
     }
     let (digits, exponent) = significant(value);
     let sign = if value < 0.0 { "−" } else { "" };
-    format!("{sign}{} %", placed(&digits, exponent))
+    format!("{sign}{}\u{a0}%", placed(&digits, exponent))
 }
 
 /// `−8.33 krad/s`, or `(−1.00 k ± j 2.00 k) rad/s` for a number with an imaginary part.
@@ -76,10 +92,10 @@ pub fn place(value: Complex<f64>, unit: &str, pair: bool) -> String {
     let real = if value.re == 0.0 {
         String::new()
     } else {
-        format!("{} ", quantity(value.re, ""))
+        format!("{}\u{a0}", quantity(value.re, ""))
     };
     let imaginary = quantity(value.im.abs(), "");
-    format!("({real}{sign} j {imaginary}) {unit}")
+    format!("({real}{sign}\u{a0}j\u{a0}{imaginary})\u{a0}{unit}")
 }
 
 /// Digits and decimal exponent of the first.
@@ -118,7 +134,7 @@ mod tests {
             (0.0, "0"),
         ];
         for (value, text) in cases {
-            assert_eq!(quantity(value, "rad/s"), text);
+            assert_eq!(quantity(value, "rad/s").replace('\u{a0}', " "), text);
         }
         assert_eq!(quantity(470.0, ""), "470");
     }
@@ -133,13 +149,14 @@ mod tests {
             (37.0, "more than 1000 %"),
         ];
         for (value, text) in cases {
-            assert_eq!(percent(value), text);
+            assert_eq!(percent(value).replace('\u{a0}', " "), text);
         }
     }
 
     #[test]
     fn complex_places() {
-        let place_of = |re, im, pair| place(Complex::new(re, im), "rad/s", pair);
+        let place_of =
+            |re, im, pair| place(Complex::new(re, im), "rad/s", pair).replace('\u{a0}', " ");
         assert_eq!(
             place_of(-1000.0, 2000.0, true),
             "(−1.00 k ± j 2.00 k) rad/s"

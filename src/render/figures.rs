@@ -4,7 +4,7 @@ use nalgebra::Complex;
 
 use crate::numeric::drift::{Cancelled, Drift};
 use crate::numeric::near::Near;
-use crate::render::engineering::{percent, place, quantity};
+use crate::render::engineering::{percent, place, plain, quantity};
 
 const RADIANS: &str = "rad/s";
 
@@ -35,7 +35,6 @@ fn mode_place(value: Complex<f64>) -> String {
 /// A near pair in clauses.
 #[must_use]
 pub fn near(it: &Near) -> Vec<String> {
-    let real = it.pole.im == 0.0 && it.zero.im == 0.0;
     let mut clauses = vec![format!(
         "pole {}, zero {}: {} apart",
         place(it.pole, RADIANS, true),
@@ -44,12 +43,7 @@ pub fn near(it: &Near) -> Vec<String> {
     )];
     match it.over_tolerance {
         Some((low, high)) if it.can_meet() => clauses.push(format!(
-            "over the tolerances the zero lies from {} to {} beyond the pole: they can meet",
-            percent(low),
-            percent(high)
-        )),
-        Some((low, high)) if real => clauses.push(format!(
-            "at the corners of the tolerances the zero lies {} to {} beyond the pole",
+            "at the corners of the tolerances {} to {} apart: they can meet",
             percent(low),
             percent(high)
         )),
@@ -62,7 +56,7 @@ pub fn near(it: &Near) -> Vec<String> {
     }
     let mut left = Vec::new();
     if let Some(residue) = it.residue {
-        left.push(format!("residue {}", place(residue, "1/s", false)));
+        left.push(format!("residue {}", rate(residue)));
     }
     if let Some(tail) = &it.tail {
         let size = match tail.of_final {
@@ -84,6 +78,16 @@ pub fn near(it: &Near) -> Vec<String> {
         clauses.push(format!("{which} not stated: 1 % is taken"));
     }
     clauses
+}
+
+/// A residue, in 1/s: without prefixes, which would read as metres.
+fn rate(value: Complex<f64>) -> String {
+    if value.im == 0.0 {
+        return format!("{}\u{a0}1/s", plain(value.re));
+    }
+    let sign = if value.im < 0.0 { "−" } else { "+" };
+    let (re, im) = (plain(value.re), plain(value.im.abs()));
+    format!("({re}\u{a0}{sign}\u{a0}j\u{a0}{im})\u{a0}1/s")
 }
 
 /// Heading and rows of the table of drifts of one mode.

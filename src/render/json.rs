@@ -19,6 +19,7 @@ use crate::render::form;
 use crate::render::linear::MACHINE;
 use crate::render::math::{self, Math};
 use crate::render::names::{FrequencyPlace, Names};
+use crate::render::product;
 use crate::render::sentence;
 use crate::source::{SourceId, Sources};
 
@@ -135,6 +136,9 @@ fn result(answer: &Answer<'_>, result: &FunctionReport) -> Value {
         let list = list.iter().enumerate();
         let list = list.map(|(index, it)| cancellation(answer, it, numbers(index), &names));
         object.insert("cancellations".into(), list.collect());
+    }
+    if let Some(exceeded) = &result.audit_cut {
+        object.insert("audit_over_budget".into(), json!(exceeded.to_string()));
     }
     if let Some(figures) = answer.figures_of(result)
         && figures.quotient.is_some()
@@ -311,14 +315,28 @@ fn insert_degrees(
             "drops_when".into(),
             drops.map(|it| drop(it, names)).collect(),
         );
+        let origin = result.origin_when.iter();
+        object.insert(
+            "origin_when".into(),
+            origin.map(|it| drop(it, names)).collect(),
+        );
     }
 }
 
 fn drop(drop: &Drop, names: &Names<'_>) -> Value {
-    json!({
-        "condition": expression(&drop.condition, names),
-        "possible": sentence::verdict(drop.possible),
-    })
+    let mut object = Object::new();
+    let condition = expression(&drop.condition, names);
+    object.insert("condition".into(), json!(condition));
+    let possible = sentence::verdict(drop.possible);
+    object.insert("possible".into(), json!(possible));
+    if !drop.example.is_empty() {
+        let values = drop.example.iter();
+        let values: Object = values
+            .map(|(symbol, value)| (names.name(*symbol).to_owned(), json!(value.to_string())))
+            .collect();
+        object.insert("at".into(), Value::Object(values));
+    }
+    Value::Object(object)
 }
 
 fn cancellation(
@@ -403,9 +421,14 @@ fn finding(finding: &Finding, names: &Names<'_>) -> Value {
     if let Some(text) = &finding.text {
         object.insert("text".into(), json!(text));
     }
-    if let Some((above, below)) = &finding.formula {
-        let above = math::polynomial(above, names);
-        let quotient = Math::quotient(above, math::polynomial(below, names));
+    let quotient = match &finding.formula {
+        Some((above, below)) if !finding.as_product => {
+            let above = math::polynomial(above, names);
+            Some(Math::quotient(above, math::polynomial(below, names)))
+        }
+        _ => product::finding(finding, names),
+    };
+    if let Some(quotient) = quotient {
         object.insert("formula".into(), json!(MACHINE.spell(&quotient)));
     }
     Value::Object(object)

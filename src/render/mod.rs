@@ -19,6 +19,7 @@ pub mod linear;
 pub mod math;
 pub mod names;
 pub mod nest;
+pub mod product;
 pub mod sentence;
 pub mod share;
 pub mod text;

@@ -4,7 +4,7 @@
 use std::cmp::Ordering;
 use std::collections::BTreeMap;
 
-use crate::algebra::Symbol;
+use crate::algebra::{Symbol, SymbolTable};
 use crate::network::{Dimension, Network, Sign};
 
 /// Where the complex frequency stands in a product.
@@ -55,6 +55,12 @@ impl<'a> Names<'a> {
     pub fn with_shared(mut self, shared: impl IntoIterator<Item = (Symbol, &'a str)>) -> Self {
         self.shared.extend(shared);
         self
+    }
+
+    /// The table of the network's symbols.
+    #[must_use]
+    pub fn table(&self) -> &SymbolTable {
+        self.network.symbols()
     }
 
     /// The name of a symbol.

@@ -224,6 +224,8 @@ pub(crate) fn function(name: &str, formula: Formula, order: u32, network: u32) -
         zero: false,
         no_effect: Vec::new(),
         drops_when: Vec::new(),
+        origin_when: Vec::new(),
+        audit_cut: None,
         cancellations: Some(Vec::new()),
         nominals_missing: Vec::new(),
         relied_on: Vec::new(),

@@ -238,6 +238,7 @@ pub(crate) fn claims() -> Bench {
         label: label.to_owned(),
         text: text.map(str::to_owned),
         formula,
+        as_product: label == "difference",
     };
     let found = vec![
         finding("claimed", None, formula(&mut make, "1", "2")),

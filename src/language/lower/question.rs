@@ -365,7 +365,8 @@ impl Lowering<'_> {
         scope: &Rc<Scope>,
     ) -> Option<crate::algebra::Rational> {
         let value = self.claimed_expression(expression, scope)?;
-        let number = value.as_rational();
+        let whole = |number: &crate::algebra::Rational| number.is_integer() && number.signum() >= 0;
+        let number = value.as_rational().filter(whole);
         if number.is_none() {
             self.error(
                 expression.place,

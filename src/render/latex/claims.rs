@@ -4,8 +4,8 @@ use crate::analysis::report::{Finding, Verdict};
 use crate::render::answer::Answer;
 use crate::render::latex::escape::escape;
 use crate::render::latex::spell::spell;
-use crate::render::math;
 use crate::render::names::{FrequencyPlace, Names};
+use crate::render::product;
 
 /// One row a claim, its findings below it; empty if there are no claims.
 pub(super) fn table(answer: &Answer<'_>) -> String {
@@ -35,10 +35,8 @@ pub(super) fn table(answer: &Answer<'_>) -> String {
 
 fn found(finding: &Finding, names: &Names<'_>) -> String {
     let text = finding.text.as_deref().map(escape);
-    let formula = finding.formula.as_ref().map(|(above, below)| {
-        let quotient = math::ratio(above, below, names);
-        format!("$\\displaystyle {}$", spell(&quotient))
-    });
+    let formula = product::finding(finding, names);
+    let formula = formula.map(|quotient| format!("$\\displaystyle {}$", spell(&quotient)));
     text.into_iter()
         .chain(formula)
         .collect::<Vec<_>>()

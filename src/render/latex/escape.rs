@@ -10,6 +10,7 @@ pub(super) fn escape(text: &str) -> String {
                 escaped.push('\\');
                 escaped.push(letter);
             }
+            '\u{a0}' => escaped.push('~'),
             '~' => escaped.push_str("\\textasciitilde{}"),
             '^' => escaped.push_str("\\textasciicircum{}"),
             '→' => escaped.push_str("$\\to$"),

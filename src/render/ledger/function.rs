@@ -183,18 +183,30 @@ fn order_evidence(answer: &Answer<'_>, result: &FunctionReport) -> Vec<Evidence>
     {
         evidence.push(Evidence::clause("never lower for positive values"));
     }
+    let origin = &result.origin_when;
+    if !origin.is_empty() && origin.iter().all(|it| it.possible == Verdict::No) {
+        evidence.push(Evidence::clause(
+            "no pole goes to s = 0 for positive values",
+        ));
+    }
     evidence
 }
 
 fn drop_lines(answer: &Answer<'_>, result: &FunctionReport) -> Vec<Line> {
-    let possible = |it: &&Drop| it.possible != Verdict::No;
-    let drops = result.drops_when.iter().filter(possible);
-    drops
-        .map(|it| {
+    let possible = |(it, _): &(&Drop, &str)| it.possible != Verdict::No;
+    let lower = result.drops_when.iter().map(|it| (it, "lower"));
+    let origin = result
+        .origin_when
+        .iter()
+        .map(|it| (it, "a pole goes to s = 0"));
+    lower
+        .chain(origin)
+        .filter(possible)
+        .map(|(it, what)| {
             let names = answer.names(FrequencyPlace::First);
             let label = match it.possible {
-                Verdict::Yes => "lower where",
-                Verdict::No | Verdict::Undecided => "lower where (if at all)",
+                Verdict::Yes => format!("{what} where"),
+                Verdict::No | Verdict::Undecided => format!("{what} where (if at all)"),
             };
             let (left, right) = math::equation(&it.condition, &names);
             let mut evidence = vec![Evidence::Equation(String::new(), left, right)];

@@ -36,6 +36,12 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
     if let Some(figures) = figures {
         text.push_str(&near(figures, page));
     }
+    // Lines are broken: the blanks inside quantities need no more protection.
+    text = text.replace('\u{a0}', " ");
+    if let Some(exceeded) = &result.audit_cut {
+        let words = format!("  Not all was told apart: {exceeded}.\n");
+        text.push_str(&paint.quiet(&words));
+    }
     if !result.nominals_missing.is_empty() {
         let mut items = result.nominals_missing.clone();
         items[0] = format!(

@@ -3,8 +3,9 @@
 use crate::analysis::report::{ClaimReport, Finding, Verdict};
 use crate::render::answer::Answer;
 use crate::render::linear::READING;
-use crate::render::math::{self, Math};
+use crate::render::math::Math;
 use crate::render::names::FrequencyPlace;
+use crate::render::product;
 use crate::render::text::Page;
 use crate::render::text::block::{Block, columns};
 use crate::render::text::fill;
@@ -74,9 +75,9 @@ fn finding(answer: &Answer<'_>, it: &Finding, widest: usize, page: &Page) -> Str
     if let Some(text) = &it.text {
         blocks.push(Block::lines(words(text, room)));
     }
-    if let Some((above, below)) = &it.formula {
-        let names = answer.names(FrequencyPlace::First);
-        blocks.push(formula(&math::ratio(above, below, &names), room));
+    let names = answer.names(FrequencyPlace::First);
+    if let Some(quotient) = product::finding(it, &names) {
+        blocks.push(formula(&quotient, room));
     }
     Block::beside(&blocks).indented(INDENT)
 }
