@@ -7,6 +7,7 @@ mod mistake;
 mod nearest;
 mod number;
 mod parser;
+mod path_scan;
 mod statement;
 pub mod syntax;
 

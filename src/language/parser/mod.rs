@@ -6,6 +6,7 @@ use pest::iterators::Pair;
 use crate::diagnostic::Diagnostic;
 use crate::language::mistake;
 use crate::language::number::{NumberError, read};
+use crate::language::path_scan::scan;
 use crate::language::statement::{Form, Piece, form, split, squeeze};
 use crate::language::syntax::{
     Asked, Claimed, Compare, Deviation, Expression, ExpressionNode, Group, Link, Listed, Literal,
@@ -216,6 +217,14 @@ impl Reader<'_> {
     }
 
     fn statement(&self, piece: Piece) -> Read<Item> {
+        if let Some(kind) = scan(self.source, self.base, self.text) {
+            let place = self.span(0, piece.end - piece.start);
+            return Ok(Item::Statement(Box::new(Statement { kind, place })));
+        }
+        self.by_grammar(piece)
+    }
+
+    fn by_grammar(&self, piece: Piece) -> Read<Item> {
         let form = form(self.text);
         if let Some(error) = mistake::before(self.text, form) {
             return Err(Box::new(error.at(self.source, self.base)));

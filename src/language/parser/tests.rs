@@ -112,3 +112,81 @@ fn mistakes_have_a_way_out() {
     );
     assert!(message("x = (1 + 2").0.contains("never closed"));
 }
+
+#[test]
+fn plain_paths_are_read_to_the_same_tree_by_scanner_and_grammar() {
+    let mut sources = Sources::new();
+    let pieces = [
+        "a",
+        "in",
+        "n1",
+        "12",
+        "0",
+        "_x",
+        "R1",
+        "C22",
+        "end",
+        "is",
+        "3V3",
+        "x.y",
+        ".",
+        "n{k}",
+        "µ",
+        "-",
+        "--",
+        "- ",
+        " -",
+        "-R1-",
+        "-L-",
+        "-(R1 + L1)-",
+        "-R2(10 k)-",
+        " ",
+        "  ",
+        "\t",
+        "=",
+        "1e3",
+    ];
+    let mut seed = 5_u64;
+    let mut random = |below: usize| {
+        seed = seed
+            .wrapping_mul(6_364_136_223_846_793_005)
+            .wrapping_add(1_442_695_040_888_963_407);
+        usize::try_from(seed >> 33).unwrap_or(0) % below
+    };
+    let (mut plain, mut other) = (0, 0);
+    for _ in 0..20_000 {
+        // Nodes and links by turns, at times anything.
+        let text: String = (0..1 + random(9))
+            .map(|turn| match (random(8), turn % 2) {
+                (0, _) => pieces[random(pieces.len())],
+                (_, 0) => pieces[random(15)],
+                _ => pieces[15 + random(6)],
+            })
+            .collect();
+        let text = text.trim();
+        if text.is_empty() {
+            continue;
+        }
+        let source = sources.add("x", text);
+        let Some(kind) = scan(source, 0, text) else {
+            other += 1;
+            continue;
+        };
+        plain += 1;
+        let reader = Reader {
+            source,
+            base: 0,
+            text,
+        };
+        let piece = Piece {
+            start: 0,
+            end: text.len(),
+        };
+        match reader.by_grammar(piece) {
+            Ok(Item::Statement(read)) => assert_eq!(read.kind, kind, "{text}"),
+            Ok(_) => panic!("{text}: no statement"),
+            Err(error) => panic!("{text}: {}", error.message),
+        }
+    }
+    assert!(plain > 300 && other > 300, "{plain} {other}");
+}
