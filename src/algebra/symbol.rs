@@ -1,6 +1,6 @@
 //! Indeterminates and their names.
 
-use std::collections::HashMap;
+use rustc_hash::FxHashMap;
 
 /// An indeterminate of the polynomials.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -23,7 +23,7 @@ impl Symbol {
 #[derive(Clone, Debug)]
 pub struct SymbolTable {
     names: Vec<String>,
-    index: HashMap<String, Symbol>,
+    index: FxHashMap<String, Symbol>,
 }
 
 impl Default for SymbolTable {
@@ -38,7 +38,7 @@ impl SymbolTable {
     pub fn new() -> Self {
         let mut table = Self {
             names: Vec::new(),
-            index: HashMap::new(),
+            index: FxHashMap::default(),
         };
         table.intern("s");
         table.intern("pi");

@@ -22,6 +22,9 @@ pub(crate) enum Built {
     Sampled(Box<Sampled>),
 }
 
+/// Parts from which on a matrix is no way out.
+const MANY: usize = 200_000;
+
 impl Built {
     /// The diagram, or where that is too wide the matrix.
     pub(crate) fn new(
@@ -30,6 +33,11 @@ impl Built {
         insertion: &Insertion,
         budget: &Budget,
     ) -> Result<Result<Self, Singular>, Exceeded> {
+        // Every part takes a state at least, and so many are too many for a matrix, too.
+        let parts = network.elements().len();
+        if parts > MANY {
+            budget.states(parts)?;
+        }
         match Determinant::build(network, frame, insertion, budget) {
             Ok(built) => Ok(built.map(|diagram| Self::Diagram(Box::new(diagram)))),
             Err(Exceeded::States(_)) => {

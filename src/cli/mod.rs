@@ -10,6 +10,7 @@ pub mod exit;
 pub mod explain;
 mod input;
 mod output;
+mod progress;
 
 use std::ffi::OsString;
 use std::io::{self, IsTerminal, Write};
@@ -96,6 +97,7 @@ impl Terminal {
         Self {
             colour_answers: coloured(anstream::AutoStream::choice(&io::stdout())),
             colour_errors: coloured(anstream::AutoStream::choice(&io::stderr())),
+            progress: io::stderr().is_terminal(),
             width: columns
                 .filter(|_| io::stdout().is_terminal())
                 .and_then(|columns| columns.parse().ok()),

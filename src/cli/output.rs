@@ -11,6 +11,8 @@ pub struct Terminal {
     pub colour_answers: bool,
     /// Diagnostics may be coloured.
     pub colour_errors: bool,
+    /// Long work may show that it goes on.
+    pub progress: bool,
     /// Columns, where known.
     pub width: Option<usize>,
 }

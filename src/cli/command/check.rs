@@ -9,6 +9,7 @@ use crate::cli::command::{explain_all, in_words, json, question, shown, wanted};
 use crate::cli::exit::Exit;
 use crate::cli::input::Origin;
 use crate::cli::output::Streams;
+use crate::cli::progress::Progress;
 use crate::render::Detail;
 use crate::render::sentence::counted;
 
@@ -24,6 +25,7 @@ pub(super) fn run(arguments: &Check, streams: &mut Streams<'_>) -> Exit {
     let mut values = Vec::new();
     let mut exit = Exit::Answered;
     for origin in &origins {
+        let progress = Progress::begin(origin.name(), streams.terminal.progress);
         let case = Case::new(
             origin,
             options,
@@ -31,6 +33,7 @@ pub(super) fn run(arguments: &Check, streams: &mut Streams<'_>) -> Exit {
             question(Detail::Claims),
             streams.input,
         );
+        drop(progress);
         explain_all(&case, streams);
         tally.add(&case);
         exit = exit.max(case.exit(&wanted));

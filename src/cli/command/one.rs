@@ -6,6 +6,7 @@ use crate::cli::command::{Shown, explain_all, in_words, json, question, wanted};
 use crate::cli::exit::Exit;
 use crate::cli::input::Origin;
 use crate::cli::output::Streams;
+use crate::cli::progress::Progress;
 
 pub(super) fn run(arguments: &One, shown: Shown, streams: &mut Streams<'_>) -> Exit {
     let options = &arguments.options;
@@ -15,7 +16,9 @@ pub(super) fn run(arguments: &One, shown: Shown, streams: &mut Streams<'_>) -> E
     };
     let detail = shown.detail;
     let wanted = wanted(detail, options.format, &options.of);
+    let progress = Progress::begin(origin.name(), streams.terminal.progress);
     let case = Case::new(&origin, options, &wanted, question(detail), streams.input);
+    drop(progress);
     explain_all(&case, streams);
     let text = match options.format {
         Format::Json => json::pretty(&json::of_case(&case, detail, false)),

@@ -36,7 +36,10 @@ pub fn network(answer: &Answer<'_>) -> Vec<Line> {
 fn device_states(answer: &Answer<'_>, order: &NetworkOrder) -> Line {
     let count = order.device_states as usize;
     let relations = answer.relations(&order.device_state_relations);
-    let relations = relations.into_iter().map(str::to_owned).collect();
+    let shown = shown(relations.len());
+    let rest = (shown < relations.len()).then(|| more(relations.len() - shown));
+    let relations = relations[..shown].iter().map(|it| (*it).to_owned());
+    let relations = relations.chain(rest).collect();
     entry(
         false,
         count,
@@ -75,28 +78,51 @@ fn has_source(answer: &Answer<'_>, sets: &[Vec<ElementId>]) -> bool {
     members.any(|id| matches!(answer.network.element(*id).kind, Kind::Source(_)))
 }
 
+/// Lines of evidence that are listed; the others are counted.
+const LISTED: usize = 10;
+
+/// How many of a list are shown: a line for one more would say no more than the one itself.
+fn shown(count: usize) -> usize {
+    if count > LISTED + 1 { LISTED } else { count }
+}
+
+fn more(count: usize) -> String {
+    format!("… {count} more")
+}
+
 fn set_entry(answer: &Answer<'_>, sets: &[Vec<ElementId>], label: &str, between: Between) -> Line {
-    let evidence = sets.iter().map(|set| {
+    let shown = shown(sets.len());
+    let listed = sets[..shown].iter().map(|set| {
         let members = answer.parts(set).into_iter().map(str::to_owned);
         Evidence::Items(members.collect(), between)
     });
-    entry(true, sets.len(), label, evidence.collect())
+    let mut evidence: Vec<Evidence> = listed.collect();
+    if shown < sets.len() {
+        evidence.push(Evidence::clause(more(sets.len() - shown)));
+    }
+    entry(true, sets.len(), label, evidence)
 }
 
 fn constraints(order: &NetworkOrder) -> Line {
     let count = order.constraints as usize;
-    let evidence = order.constraint_evidence.iter().map(|it| {
+    let all = &order.constraint_evidence;
+    let shown = shown(all.len());
+    let clauses = all[..shown].iter().map(|it| {
         if it.clause.is_empty() {
-            Evidence::clause(listed(&it.names))
+            Evidence::clause(sentence::listed(&it.names))
         } else {
             Evidence::clause(&it.clause)
         }
     });
+    let mut evidence: Vec<Evidence> = clauses.collect();
+    if shown < all.len() {
+        evidence.push(Evidence::clause(more(all.len() - shown)));
+    }
     entry(
         true,
         count,
         noun(count, "constraint", "constraints"),
-        evidence.collect(),
+        evidence,
     )
 }
 
