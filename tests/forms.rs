@@ -2,9 +2,10 @@
 
 use std::process::Command;
 
-fn formula(network: &str) -> String {
+fn formula(network: &str, options: &[&str]) -> String {
     let output = Command::new(env!("CARGO_BIN_EXE_cutloop"))
         .args(["formula", "-e", network])
+        .args(options)
         .env_remove("COLUMNS")
         .output()
         .expect("the command starts");
@@ -13,7 +14,11 @@ fn formula(network: &str) -> String {
 }
 
 fn says(network: &str, lines: &[&str]) {
-    let found = formula(network);
+    shows(network, &[], lines);
+}
+
+fn shows(network: &str, options: &[&str], lines: &[&str]) {
+    let found = formula(network, options);
     let shown: Vec<&str> = found.lines().map(str::trim).collect();
     for line in lines {
         assert!(shown.contains(line), "{network}: no line {line}\n{found}");
@@ -101,4 +106,67 @@ fn kinds_of_responses() {
         "in -Vs- ground; in -R1- out -(L1 + C1)- ground; derive H = voltage(out)/Vs",
         &["notch of second order · conjugate poles (Q > 1/2) where 4·L1 > R1²·C1"],
     );
+}
+
+/// RC ladder: C1 sees R1, C2 sees R1 + R2, and R2 with C1 shorted (Cochrun & Grabel, "A method for the
+/// determination of the transfer function of electronic circuits", IEEE Trans. CT-20 (1973)); the delay
+/// of Elmore, "The transient response of damped linear networks", J. Appl. Phys. 19 (1948), is b1 − a1.
+#[test]
+fn time_constants_of_ladders() {
+    let capacitors = "in -Vs- ground; in -R1- a -R2- out; a -C1- ground; out -C2- ground; \
+                      derive H = voltage(out)/Vs";
+    shows(
+        capacitors,
+        &["--time-constants"],
+        &[
+            "C1  sees R1       τ = R1·C1",
+            "C2  sees R1 + R2  τ = (R1 + R2)·C2",
+            "C2  sees R2 with C1 shorted  × τ(C1)",
+            "Elmore delay b1 − a1 = R2·C2 + R1·(C1 + C2)",
+        ],
+    );
+    let zero = "in -Vs- ground; in -R1- out; out -C1- ground; in -C2- out; out -R2- ground; \
+                derive H = voltage(out)/Vs";
+    shows(
+        zero,
+        &["--time-constants"],
+        &[
+            "C1  sees R1 ∥ R2  τ = (R1 ∥ R2)·C1",
+            "C2  sees R1 ∥ R2  τ = (R1 ∥ R2)·C2",
+        ],
+    );
+    let stage = "g -Vs- ground; Q1 is fet(g, d, s) with cgd = Cx; s -- ground; free Cx; d -RD- ground; \
+                 derive H = voltage(d)/Vs";
+    shows(stage, &["--time-constants"], &["Cx  sees RD  τ = RD·Cx"]);
+    let coils = "in -Vs- ground; in -L1- a -L2- out; a -R1- ground; out -R2- ground; \
+                 derive H = voltage(out)/Vs";
+    shows(
+        coils,
+        &["--time-constants"],
+        &[
+            "L1  sees R1 ∥ R2  τ = L1/(R1 ∥ R2)",
+            "L2  sees R2       τ = L2/R2",
+            "L2  sees R1 + R2 with L1 open  × τ(L1)",
+        ],
+    );
+}
+
+#[test]
+fn where_there_is_no_sum_of_time_constants_the_reason_is_said() {
+    for (network, why) in [
+        (
+            "in -Vs- ground; in -R1- out -C1- a -C2- ground; C2 = C1/2; derive H = voltage(out)/Vs",
+            "no sum of time constants: values of C and L are tied by relations, or s stands inside a device",
+        ),
+        (
+            "in -Vs- ground; in -C1- ground; derive Z = impedance(in) without Vs",
+            "no sum of time constants: it has a pole at s = 0, where every sum refers to the value at s = 0",
+        ),
+        (
+            "in -Vs- ground; in -R1- out -R2- ground; derive H = voltage(out)/Vs",
+            "no sum of time constants: it has no poles",
+        ),
+    ] {
+        shows(network, &["--time-constants"], &[why]);
+    }
 }

@@ -46,3 +46,13 @@ fn shows_the_example_it_runs() {
     assert!(readme.contains(include_str!("../examples/antialias_filter.cutloop").trim()));
     assert!(readme.contains("cargo run --release -- formula examples/antialias_filter.cutloop"));
 }
+
+#[test]
+fn shows_time_constants_as_they_are_answered() {
+    let readme = include_str!("../README.md");
+    let example = "examples/averaged_stage.cutloop";
+    let found = answer(&["formula", "--of", "H", "--time-constants", example]);
+    let start = found.find("  b1, the sum").expect("sums");
+    let end = found.find("\n\n  Elmore").expect("a delay");
+    assert!(readme.contains(&found[start..end]), "{found}");
+}

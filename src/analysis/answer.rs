@@ -8,7 +8,7 @@ use crate::analysis::claim::Evidence;
 use crate::analysis::couplings::Couplings;
 use crate::analysis::drops::{drops, undecided};
 use crate::analysis::effect;
-use crate::analysis::form::{Forms, forms};
+use crate::analysis::form::{Forms, forms, time_constants};
 use crate::analysis::functions;
 use crate::analysis::knowledge::Knowledge;
 use crate::analysis::meaning;
@@ -181,7 +181,12 @@ impl Run<'_> {
         if wanted.forms {
             for report in &mut results {
                 if let Formula::Expanded(expanded) = &report.formula {
-                    report.forms = forms(network, expanded);
+                    let mut found = forms(network, expanded);
+                    if wanted.time_constants {
+                        let sums = time_constants(network, report, expanded, self.setting.budget)?;
+                        found.time_constants = Some(sums);
+                    }
+                    report.forms = found;
                 }
             }
         }

@@ -5,6 +5,7 @@
 //! operations, then the first in the order of names.
 
 mod character;
+mod constants;
 mod gradient;
 mod merge;
 mod response;
@@ -15,8 +16,11 @@ mod write;
 use std::time::Duration;
 
 pub use character::{Character, Inequality, Kind, Step};
+pub use constants::{Constant, Pair, Reactive, Sums, TimeConstants};
 pub use response::{Designer, Section, Shape};
 pub use tree::Form;
+
+pub(crate) use constants::time_constants;
 
 use crate::algebra::{Fraction, Polynomial};
 use crate::analysis::report::Expanded;
@@ -38,6 +42,8 @@ pub struct Forms {
     pub dc: Option<Limit>,
     /// The limit for s towards infinity.
     pub hf: Option<Limit>,
+    /// Denominator coefficients as sums of time constants, where that was asked for.
+    pub time_constants: Option<TimeConstants>,
     /// What a function of first or second order does.
     pub character: Option<Character>,
 }
@@ -95,6 +101,7 @@ pub fn forms(network: &Network, formula: &Expanded) -> Forms {
             .flatten(),
         dc: dc(formula, &writer).ok().flatten(),
         hf: hf(formula, &writer).ok().flatten(),
+        time_constants: None,
         character: short
             .then(|| {
                 character::character(network, formula, factored, &writer, &budget)

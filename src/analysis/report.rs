@@ -274,6 +274,8 @@ pub struct Wanted {
     pub formulas: bool,
     /// Formulas as a designer writes them, too.
     pub forms: bool,
+    /// Denominator coefficients as sums of time constants, too.
+    pub time_constants: bool,
     /// Claims.
     pub claims: bool,
     /// Cancellations with class and cause.

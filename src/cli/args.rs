@@ -77,6 +77,9 @@ pub struct Forms {
     /// What is shown of a function: coefficients, normalised, designer or nested
     #[arg(long, value_enum, default_value_t = FormName::Designer, hide_possible_values = true)]
     pub form: FormName,
+    /// Show the denominator coefficients as sums of time constants, with what each part sees
+    #[arg(long)]
+    pub time_constants: bool,
     /// File and options.
     #[command(flatten)]
     pub one: One,

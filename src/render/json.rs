@@ -5,7 +5,7 @@ mod numbers;
 use serde_json::{Map, Value, json};
 
 use crate::algebra::Polynomial;
-use crate::analysis::form::{Form, Forms, Inequality, Kind, Limit, Section, Shape};
+use crate::analysis::form::{Form, Forms, Inequality, Kind, Limit, Section, Shape, TimeConstants};
 use crate::analysis::report::{
     Cancellation, ClaimReport, Drop, Expanded, Finding, Formula, FunctionReport, Nested,
     NetworkOrder, Verdict,
@@ -212,6 +212,9 @@ fn insert_forms(object: &mut Object, forms: &Forms, names: &Names<'_>) {
         };
         object.insert(key.into(), json!(text));
     }
+    if let Some(found) = &forms.time_constants {
+        object.insert("time_constants".into(), time_constants(found, names));
+    }
     let Some(character) = &forms.character else {
         return;
     };
@@ -235,6 +238,39 @@ fn insert_forms(object: &mut Object, forms: &Forms, names: &Names<'_>) {
         let value = json!({ "initial": spelled(&step.first), "final": spelled(&step.last) });
         object.insert("step".into(), value);
     }
+}
+
+/// What each part sees with all others at zero value, and with one other at infinite value.
+fn time_constants(found: &TimeConstants, names: &Names<'_>) -> Value {
+    let sums = match found {
+        TimeConstants::Sums(sums) => sums,
+        TimeConstants::None(why) => return json!({ "none": why }),
+    };
+    let spelled = |it: &Form| MACHINE.spell(&form::math(it, names));
+    let first = sums.first.iter().map(|it| {
+        json!({ "part": names.name(it.part), "sees": spelled(&it.sees), "tau": spelled(&it.tau) })
+    });
+    let second = sums.second.iter().map(|it| {
+        let mut value = json!({
+            "at_infinite_value": names.name(it.at_infinity), "product": spelled(&it.product),
+        });
+        match &it.other {
+            Ok(other) => {
+                value["part"] = json!(names.name(other.part));
+                value["sees"] = json!(spelled(&other.sees));
+            }
+            Err(other) => value["part"] = json!(names.name(*other)),
+        }
+        value
+    });
+    let mut value = json!({
+        "first": first.collect::<Value>(),
+        "second": second.collect::<Value>(),
+    });
+    if let Some(delay) = &sums.elmore {
+        value["elmore_delay"] = json!(spelled(delay));
+    }
+    value
 }
 
 fn inequality(it: &Inequality, names: &Names<'_>) -> Value {

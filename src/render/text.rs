@@ -4,6 +4,7 @@ mod audit;
 mod block;
 mod claims;
 mod columns;
+mod constants;
 mod fill;
 mod formula;
 mod order;

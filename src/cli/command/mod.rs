@@ -23,6 +23,7 @@ pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
             let style = style(arguments.form);
             let shown = Shown {
                 style,
+                time_constants: arguments.time_constants,
                 ..shown(Detail::Formula)
             };
             one::run(&arguments.one, shown, streams)
@@ -36,12 +37,14 @@ pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
 struct Shown {
     detail: Detail,
     style: FormStyle,
+    time_constants: bool,
 }
 
 fn shown(detail: Detail) -> Shown {
     Shown {
         detail,
         style: FormStyle::default(),
+        time_constants: false,
     }
 }
 
@@ -101,6 +104,7 @@ fn wanted(detail: Detail, format: Format, of: &[String]) -> Wanted {
         functions: of.to_vec(),
         formulas: matches!(detail, Detail::Formula | Detail::Audit),
         forms: matches!(detail, Detail::Formula | Detail::Audit),
+        time_constants: false,
         claims: detail == Detail::Claims,
         figures: detail == Detail::Audit,
         cancellations: match detail {

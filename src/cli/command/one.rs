@@ -1,5 +1,6 @@
 //! Commands about one file: order, formula, audit.
 
+use crate::analysis::report::Wanted;
 use crate::cli::args::{Format, One};
 use crate::cli::case::Case;
 use crate::cli::command::{Shown, explain_all, in_words, json, question, wanted};
@@ -15,7 +16,10 @@ pub(super) fn run(arguments: &One, shown: Shown, streams: &mut Streams<'_>) -> E
         (None, file) => Origin::File(file.clone().unwrap_or_else(|| "-".to_owned())),
     };
     let detail = shown.detail;
-    let wanted = wanted(detail, options.format, &options.of);
+    let wanted = Wanted {
+        time_constants: shown.time_constants,
+        ..wanted(detail, options.format, &options.of)
+    };
     let progress = Progress::begin(origin.name(), streams.terminal.progress);
     let case = Case::new(&origin, options, &wanted, question(detail), streams.input);
     drop(progress);

@@ -1,10 +1,13 @@
 //! Derived functions as displayed equations.
 
+use crate::algebra::Symbol;
+use crate::analysis::form::{Form, Reactive, TimeConstants};
 use crate::analysis::report::{Expanded, Formula, FunctionReport, Nested};
 use crate::render::answer::{Answer, Detail, FormStyle};
 use crate::render::character;
 use crate::render::coefficients::{self, Definition, Manner, NamedForm};
 use crate::render::designer::{StandardForm, standard};
+use crate::render::form;
 use crate::render::latex::escape::{escape, name};
 use crate::render::latex::spell::{LINE, lines, spell, width};
 use crate::render::math::{self, Bars, Math, Within};
@@ -20,11 +23,55 @@ pub(super) fn function(answer: &Answer<'_>, result: &FunctionReport) -> String {
             if answer.style == FormStyle::Designer && answer.detail == Detail::Formula {
                 text.push_str(&what_it_does(result, &names));
             }
+            if let Some(found) = &result.forms.time_constants {
+                text.push_str(&time_constants(found, &names));
+            }
             text
         }
         Formula::Nested(form) => nested(&result.name, form, &names),
         Formula::OverBudget(exceeded) => format!("{}\n", escape(&sentence::over_budget(exceeded))),
     }
+}
+
+/// The time constants of the coefficients of s and s².
+fn time_constants(found: &TimeConstants, names: &Names<'_>) -> String {
+    let sums = match found {
+        TimeConstants::Sums(sums) => sums,
+        TimeConstants::None(why) => return format!("No sum of time constants: {}.\n", escape(why)),
+    };
+    let spelled = |it: &Form| spell(&form::math(it, names));
+    let part = |symbol: Symbol| name(names.name(symbol));
+    let mut rows: Vec<String> = sums
+        .first
+        .iter()
+        .map(|it| format!("  \\tau({}) &= {}", part(it.part), spelled(&it.tau)))
+        .collect();
+    for it in &sums.second {
+        let first = part(it.at_infinity);
+        let state = match it.kind {
+            Reactive::Capacitor => "shorted",
+            Reactive::Inductor => "open",
+        };
+        rows.push(match &it.other {
+            Ok(other) => format!(
+                "  \\tau({}\\mid {first}\\ \\text{{{state}}}) &= {}",
+                part(other.part),
+                spelled(&other.tau)
+            ),
+            Err(other) => format!(
+                "  \\tau({first})\\,\\tau({}) &= {}",
+                part(*other),
+                spelled(&it.product)
+            ),
+        });
+    }
+    if let Some(delay) = &sums.elmore {
+        rows.push(format!("  b_1 - a_1 &= {}", spelled(delay)));
+    }
+    format!(
+        "\\begin{{align*}}\n{}\n\\end{{align*}}\n",
+        rows.join(" \\\\\n")
+    )
 }
 
 /// Kind of the response, where the poles are conjugate, the answer to a step.

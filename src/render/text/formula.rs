@@ -15,6 +15,7 @@ use crate::render::names::{FrequencyPlace, Names};
 use crate::render::sentence;
 use crate::render::text::Page;
 use crate::render::text::block::{Block, columns};
+use crate::render::text::constants;
 use crate::render::text::fill;
 use crate::render::text::order;
 use crate::render::text::paint::Paint;
@@ -33,6 +34,9 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
             text.push_str(&expanded(result, formula, &names, page, answer.style));
             if answer.style == FormStyle::Designer && answer.detail == Detail::Formula {
                 text.push_str(&what_it_does(&result.name, &result.forms, &names, page));
+            }
+            if let Some(found) = &result.forms.time_constants {
+                text.push_str(&constants::section(found, &names));
             }
         }
         Formula::Nested(form) => text.push_str(&nested(&result.name, form, &names, page)),
