@@ -13,6 +13,7 @@ mod diagram;
 mod drops;
 mod effect;
 mod equations;
+pub mod equivalent;
 pub mod form;
 mod functions;
 mod hidden;

@@ -44,6 +44,11 @@ pub enum Command {
     /// Show every pole-zero cancellation: its class, its cause, its proof
     #[command(after_help = "Example:\n  cutloop audit filter.cutloop --format json")]
     Audit(One),
+    /// Reduce to the simplest network with the same derived functions, step by step
+    #[command(
+        after_help = "Example:\n  cutloop reduce -e 'in -Vs- ground; in -R1- a -C1- b -R2- out -C2- ground; derive H = voltage(out)/Vs'\n\nThe reduced network is printed in the language of the input; it is read again, solved and compared\nwith the original. Exit status 3 where that is not decided."
+    )]
+    Reduce(Reduce),
 }
 
 /// Arguments of `check`.
@@ -96,6 +101,17 @@ pub enum FormName {
     Designer,
     /// Common symbols taken out, shared sums named
     Nested,
+}
+
+/// Arguments of `reduce`.
+#[derive(Debug, Args)]
+pub struct Reduce {
+    /// Turn stars of three like parts into triangles, too
+    #[arg(long)]
+    pub star_delta: bool,
+    /// The file and what all commands share.
+    #[command(flatten)]
+    pub one: One,
 }
 
 /// Options that all commands share.

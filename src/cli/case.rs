@@ -187,6 +187,17 @@ impl Unsolved {
     }
 }
 
+/// A failure in one sentence.
+pub(super) fn told(failure: &Failure) -> String {
+    match failure {
+        Failure::Unusable(list) => list
+            .first()
+            .map_or(String::new(), |first| first.message.clone()),
+        Failure::Budget(exceeded) => exceeded.to_string(),
+        Failure::Witness(text) => text.clone(),
+    }
+}
+
 /// Whether a command can do without a `derive` line.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Question {

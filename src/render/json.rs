@@ -1,6 +1,7 @@
 //! The JSON of the answers. Expressions are strings in the syntax of the language, integers exact.
 
 mod numbers;
+mod reduction;
 
 use serde_json::{Map, Value, json};
 
@@ -22,6 +23,8 @@ use crate::render::names::{FrequencyPlace, Names};
 use crate::render::product;
 use crate::render::sentence;
 use crate::source::{SourceId, Sources};
+
+pub use reduction::reduction;
 
 type Object = Map<String, Value>;
 

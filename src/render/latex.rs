@@ -3,6 +3,7 @@
 mod claims;
 mod equation;
 mod escape;
+mod reduction;
 mod spell;
 mod table;
 
@@ -11,6 +12,7 @@ use crate::render::answer::{Answer, Detail};
 use crate::render::ledger;
 use crate::render::sentence;
 use escape::escape;
+pub use reduction::reduction;
 
 /// The whole answer about one file.
 #[must_use]

@@ -9,9 +9,11 @@ mod fill;
 mod formula;
 mod order;
 mod paint;
+mod reduction;
 
 use crate::render::answer::{Answer, Detail};
 use paint::Paint;
+pub use reduction::reduction;
 
 /// How the text is drawn.
 #[derive(Clone, Copy, Debug)]

@@ -3,6 +3,7 @@
 mod check;
 mod json;
 mod one;
+mod reduce;
 
 use crate::analysis::report::Wanted;
 use crate::cli::args::{Command, FormName, Format};
@@ -28,6 +29,7 @@ pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
             };
             one::run(&arguments.one, shown, streams)
         }
+        Command::Reduce(arguments) => reduce::run(arguments, streams),
         Command::Audit(arguments) => one::run(arguments, shown(Detail::Audit), streams),
     }
 }
