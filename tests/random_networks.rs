@@ -9,10 +9,12 @@ use std::fmt::Write as _;
 
 use cutloop::algebra::{Fraction, Polynomial, Symbol};
 use cutloop::analysis::answer;
-use cutloop::analysis::report::{Failure, Formula, Wanted};
+use cutloop::analysis::equivalent::{proof::same, reduce};
+use cutloop::analysis::report::{Failure, Formula, Verdict, Wanted};
 use cutloop::budget::Budget;
 use cutloop::language::{ReadOptions, read};
 use cutloop::network::Network;
+use cutloop::render::netlist::netlist;
 use cutloop::source::Sources;
 
 /// 2^62 − 57, prime.
@@ -941,4 +943,63 @@ fn every_form_that_is_shown_is_equal_to_the_quotient_of_polynomials() {
     let first = setting("CUTLOOP_SEED", 1);
     let found: usize = (first..first + trials).map(forms).sum();
     assert!(found * 4 > trials as usize, "only {found} forms");
+}
+
+/// Whether the reduced network has the functions of the case; `None` where the case has no answer.
+fn reduced_agrees(seed: u64) -> Option<bool> {
+    let case = make(seed);
+    let wanted = Wanted {
+        formulas: true,
+        ..Wanted::default()
+    };
+    let solved = |text: &str| {
+        let mut sources = Sources::new();
+        let main = sources.add("random", text);
+        let load = |_: &str, _: &str| Err("none".to_owned());
+        let options = ReadOptions {
+            set: &[],
+            load: &load,
+        };
+        let reading = read(&mut sources, main, &options);
+        let messages = format!("{:?}", reading.diagnostics);
+        let network = reading.network.ok_or(messages)?;
+        let report = answer(&network, &wanted, &Budget::default());
+        let report = report.map_err(|failure| format!("{failure:?}"))?;
+        Ok::<_, String>((network, report))
+    };
+    let (network, report) = solved(&case.text).ok()?;
+    if !matches!(report.results[0].formula, Formula::Expanded(_)) {
+        return None;
+    }
+    let reduction = reduce(&network, &wanted, seed.is_multiple_of(2));
+    let written = netlist(&network, &reduction);
+    let context = format!("seed {seed}\n{}\n{}", case.text, written.text);
+    let (again, second) = match solved(&written.text) {
+        Ok(found) => found,
+        Err(message) => panic!("{message}\n{context}"),
+    };
+    let spelled = |name: &str| written.spelled(name);
+    let verdict = same(
+        (&network, &report),
+        (&again, &second),
+        &spelled,
+        &Budget::default(),
+    );
+    // Large functions may pass the budget; that is said, not guessed.
+    let undecided = verdict == Verdict::Undecided && case.nodes > 8;
+    assert!(verdict == Verdict::Yes || undecided, "{context}");
+    Some(verdict == Verdict::Yes && !reduction.steps.is_empty())
+}
+
+#[test]
+fn reduction_keeps_the_functions_of_random_networks() {
+    let trials = setting("CUTLOOP_TRIALS", 1500) / 3;
+    let first = setting("CUTLOOP_SEED", 1);
+    let stepped = (first..first + trials)
+        .filter(|&seed| reduced_agrees(seed) == Some(true))
+        .count();
+    assert!(
+        stepped * 4 > trials as usize,
+        "only {stepped} of {trials} networks from seed {first} had a step"
+    );
 }

@@ -38,5 +38,9 @@ printed! {
     audit_of_a_divider: "audit", "probe_divider", "text";
     audit_of_a_lucky_pair: "audit", "lucky_equaliser", "text";
     audit_of_a_lucky_pair_in_json: "audit", "lucky_equaliser", "json";
+    reduction_of_a_line_filter: "reduce", "line_filter", "text";
+    reduction_of_a_delay_ladder: "reduce", "delay_ladder", "text";
+    reduction_of_a_light_receiver: "reduce", "light_receiver", "json";
+    reduction_of_a_feedback_pair_in_latex: "reduce", "output_stage_loop", "latex";
     claims_of_a_lucky_pair: "check", "lucky_equaliser", "text";
 }

@@ -124,6 +124,11 @@ fn free(wanted: &str, taken: &mut BTreeSet<String>) -> String {
     name
 }
 
+/// Nodes in file order, the reference after all others.
+fn ground_last(node: NodeId) -> (bool, NodeId) {
+    (node == NodeId::GROUND, node)
+}
+
 struct Writer<'a> {
     network: &'a Network,
     circuit: &'a Circuit,
@@ -183,7 +188,9 @@ impl Writer<'_> {
         while let Some(edge) = waiting.pop() {
             match &self.circuit.trees[edge.tree] {
                 Tree::Part(part) => {
-                    let (from, to) = (self.node(edge.from), self.node(edge.to));
+                    let mut ends = [edge.from, edge.to];
+                    ends.sort_by_key(|&node| ground_last(node));
+                    let [from, to] = ends.map(|node| self.node(node));
                     let name = self.place(*part);
                     self.wiring.push(format!("{from} -{name}- {to}"));
                 }
@@ -191,11 +198,16 @@ impl Writer<'_> {
                     waiting.extend(items.iter().rev().map(|&tree| Edge { tree, ..edge }))
                 }
                 Tree::Series { items, nodes } => {
-                    let ends: Vec<NodeId> = [edge.from]
+                    let mut ends: Vec<NodeId> = [edge.from]
                         .into_iter()
                         .chain(nodes.iter().copied())
                         .chain([edge.to])
                         .collect();
+                    let mut items = items.clone();
+                    if ground_last(edge.to) < ground_last(edge.from) {
+                        ends.reverse();
+                        items.reverse();
+                    }
                     let mut path = String::new();
                     for (&tree, pair) in items.iter().zip(ends.windows(2)) {
                         let &[from, to] = pair else { continue };

@@ -166,7 +166,7 @@ fn shared(network: &Network, set: &[ElementId], kind: Shared) -> Option<String> 
     match reactive.as_slice() {
         [_, _] if others.is_empty() => None,
         [_, _] => Some(format!(
-            "{} {figure}{with}: one state of {}; the {fixed}s of both differ by the {fixed} of {} alone",
+            "{} {figure}{with}: one state, of {}; either {fixed} is that of the other beside {}",
             names(&reactive, " and "),
             names(&reactive, " + "),
             names(&others, ", "),

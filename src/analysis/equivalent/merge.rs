@@ -178,6 +178,7 @@ impl Circuit {
         let (mut list, first_aside) = members(first);
         let (more, second_aside) = members(second);
         list.extend(more);
+        list.sort_unstable();
         let class = self.parts[first].class;
         self.part(Part {
             name: String::new(),

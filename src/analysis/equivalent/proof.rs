@@ -23,10 +23,13 @@ pub fn same(
         .into_iter()
         .map(|it| (it, it))
         .collect();
-    for facts in first.0.all_facts() {
-        let name = spelled(first.0.symbols().name(facts.symbol));
+    let stated = first.0.all_facts().map(|facts| facts.symbol);
+    // A mutual inductance stands in formulas without having been stated.
+    let shown = first.1.results.iter().flat_map(|result| shown(result));
+    for own in stated.chain(shown) {
+        let name = spelled(first.0.symbols().name(own));
         if let Some(symbol) = second.0.symbols().find(&name) {
-            back.insert(symbol, facts.symbol);
+            back.insert(symbol, own);
         }
     }
     let mut verdict = Verdict::Yes;
@@ -40,6 +43,14 @@ pub fn same(
         }
     }
     verdict
+}
+
+fn shown(result: &FunctionReport) -> Vec<Symbol> {
+    let Formula::Expanded(formula) = &result.formula else {
+        return Vec::new();
+    };
+    let all = formula.numerator.iter().chain(&formula.denominator);
+    all.flat_map(Polynomial::symbols).collect()
 }
 
 fn equal(
@@ -60,7 +71,9 @@ fn equal(
         return Ok(None);
     }
     let rename = |part: &Polynomial| part.rename(&|it| back.get(&it).copied().unwrap_or(it));
-    let left = n1.product(&rename(&d2), budget)?;
-    let right = rename(&n2).product(&d1, budget)?;
-    Ok(Some(left == right))
+    let (n2, d2) = (rename(&n2), rename(&d2));
+    if n1 == n2 && d1 == d2 {
+        return Ok(Some(true));
+    }
+    Ok(Some(n1.product(&d2, budget)? == n2.product(&d1, budget)?))
 }

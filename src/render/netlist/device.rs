@@ -2,12 +2,11 @@
 
 use crate::algebra::{Fraction, Rational};
 use crate::analysis::equivalent::Class;
+use crate::budget::Budget;
 use crate::network::{
     Control, ElementId, Kind, NodeId, Port, Quantity, Sense, Source, Strength, Value,
 };
-use crate::render::linear::MACHINE;
 use crate::render::netlist::Writer;
-use crate::render::netlist::value::number_math;
 
 impl Writer<'_> {
     /// Every part that is no edge, in file order.
@@ -59,7 +58,7 @@ impl Writer<'_> {
         for control in &source.controls {
             let coefficient = self.coefficient(&control.factor, &control.value);
             let sensed = self.sensed(control);
-            terms.push(format!("({coefficient})*{sensed}"));
+            terms.push((coefficient, sensed));
         }
         for follow in &source.drives {
             let drive = self.network.drive(follow.drive).name.clone();
@@ -73,23 +72,21 @@ impl Writer<'_> {
             if !self.kinds.contains(&line) {
                 self.kinds.push(line);
             }
-            terms.push(format!("({coefficient})*{drive}"));
+            terms.push((coefficient, drive));
         }
         if !terms.is_empty() {
             self.values
                 .lines
-                .push(format!("{name} = {}", terms.join(" + ")));
+                .push(format!("{name} = {}", linear(&terms)));
         }
     }
 
     /// `factor · value`, with the relation of a coefficient put in.
     fn coefficient(&mut self, factor: &Rational, value: &Value) -> String {
         let fraction = self.fraction_of(value);
-        let text = self.fraction(&fraction);
-        if *factor == Rational::one() {
-            return text;
-        }
-        format!("({})*({text})", MACHINE.spell(&number_math(factor)))
+        let factor = Fraction::from(factor.clone());
+        let product = factor.mul(&fraction, &Budget::default());
+        self.fraction(&product.unwrap_or(fraction))
     }
 
     /// A value; coefficients and options that a relation sets by what it says.
@@ -224,6 +221,30 @@ impl Writer<'_> {
             self.devices.push(line);
         }
     }
+}
+
+/// Coefficients times quantities, added up.
+pub(super) fn linear(terms: &[(String, String)]) -> String {
+    let mut text = String::new();
+    for (index, (coefficient, quantity)) in terms.iter().enumerate() {
+        let whole = coefficient.contains(' ');
+        let (minus, size) = match coefficient.strip_prefix('-') {
+            Some(rest) if !whole => (true, rest),
+            _ => (false, coefficient.as_str()),
+        };
+        text.push_str(match (index, minus) {
+            (0, false) => "",
+            (0, true) => "-",
+            (_, false) => " + ",
+            (_, true) => " - ",
+        });
+        text.push_str(&match (size, whole) {
+            ("1", _) => quantity.clone(),
+            (_, true) => format!("({size})*{quantity}"),
+            (_, false) => format!("{size}*{quantity}"),
+        });
+    }
+    text
 }
 
 fn with(options: &[String]) -> String {

@@ -3,6 +3,7 @@
 use crate::algebra::Fraction;
 use crate::network::{Ask, Combination, Kind, LimitPoint, NodeId, Port, Probe};
 use crate::render::netlist::Writer;
+use crate::render::netlist::device::linear;
 
 impl Writer<'_> {
     /// Asks one question again.
@@ -13,7 +14,13 @@ impl Writer<'_> {
         let asks = match &question.ask {
             Ask::Transfer { response, drive } => {
                 let drive = self.name(&self.network.drive(*drive).name);
-                format!("({}) / {drive}", self.combination(response))
+                let plain = matches!(response.terms.as_slice(), [(factor, _)] if *factor == Fraction::one());
+                let response = self.combination(response);
+                if plain {
+                    format!("{response} / {drive}")
+                } else {
+                    format!("({response}) / {drive}")
+                }
             }
             Ask::Impedance(port) => format!("impedance({})", self.port(*port)),
             Ask::Admittance(port) => format!("admittance({})", self.port(*port)),
@@ -79,22 +86,15 @@ impl Writer<'_> {
     }
 
     fn combination(&mut self, combination: &Combination) -> String {
-        let terms: Vec<String> = combination
-            .terms
-            .iter()
-            .map(|(factor, probe)| {
-                let response = match probe {
-                    Probe::Voltage(port) => self.voltage(*port),
-                    Probe::Current(part) => format!("current({})", self.elements[part]),
-                };
-                if *factor == Fraction::one() {
-                    response
-                } else {
-                    format!("({})*{response}", self.fraction(factor))
-                }
-            })
-            .collect();
-        terms.join(" + ")
+        let mut terms = Vec::new();
+        for (factor, probe) in &combination.terms {
+            let response = match probe {
+                Probe::Voltage(port) => self.voltage(*port),
+                Probe::Current(part) => format!("current({})", self.elements[part]),
+            };
+            terms.push((self.fraction(factor), response));
+        }
+        linear(&terms)
     }
 
     /// The initial values; their parts are kept.

@@ -7,6 +7,7 @@ use crate::analysis::equivalent::{Class, Definition, PartId};
 use crate::network::{Origin, Range, Sign, Value};
 use crate::render::linear::MACHINE;
 use crate::render::math::Math;
+use crate::render::names::natural;
 use crate::render::netlist::Writer;
 
 /// What has to be said of symbols.
@@ -14,6 +15,7 @@ use crate::render::netlist::Writer;
 pub(super) struct Values {
     /// Lines of the text.
     pub(super) lines: Vec<String>,
+    free: Vec<String>,
     needed: Vec<Symbol>,
     seen: BTreeSet<Symbol>,
     /// Symbols that are the value of a part that stands in the text.
@@ -138,12 +140,22 @@ impl Writer<'_> {
                 (true, Some(nominal)) => self.values.lines.push(format!("{name} : {nominal}")),
                 (true, None) => {}
                 (false, nominal) => {
-                    self.values.lines.push(format!("free {name}{sign}"));
+                    if sign.is_empty() {
+                        self.values.free.push(name.clone());
+                    } else {
+                        self.values.lines.push(format!("free {name}{sign}"));
+                    }
                     if let Some(nominal) = nominal {
                         self.values.lines.push(format!("{name} : {nominal}"));
                     }
                 }
             }
+        }
+        let mut free = std::mem::take(&mut self.values.free);
+        free.sort_by(|left, right| natural(left, right));
+        for names in free.chunks(10) {
+            let line = format!("free {}", names.join(", "));
+            self.values.lines.push(line);
         }
     }
 }
@@ -193,24 +205,56 @@ pub(in crate::render) fn definition(
     }
 }
 
-/// A decimal number in the language's spelling, where it terminates within reason.
+/// A decimal number with an exponent that is a multiple of three, where it terminates within reason.
 fn decimal(number: &Rational) -> Option<String> {
-    let ten = Integer::from(10);
     let mut value = number.clone();
-    for places in 0..30_i32 {
+    for places in 0..40_i32 {
         if value.is_integer() {
-            let mut digits = value.numerator().to_string();
-            let mut exponent = -places;
-            while digits.len() > 1 && digits.ends_with('0') {
-                digits.pop();
-                exponent += 1;
-            }
-            return Some(match exponent {
-                0 => digits,
-                _ => format!("{digits}e{exponent}"),
-            });
+            return Some(engineering(&value.numerator().to_string(), -places));
         }
-        value = &value * &Rational::from(ten.clone());
+        value = &value * &Rational::from(Integer::from(10));
     }
     None
+}
+
+/// `digits · 10^exponent`, one to three digits before the point.
+fn engineering(digits: &str, exponent: i32) -> String {
+    let (sign, all) = digits
+        .strip_prefix('-')
+        .map_or(("", digits), |rest| ("-", rest));
+    let short = all.trim_end_matches('0');
+    if short.is_empty() {
+        return "0".to_owned();
+    }
+    let length = i32::try_from(all.len()).unwrap_or(i32::MAX);
+    let highest = length + exponent - 1;
+    let thousands = highest.div_euclid(3) * 3;
+    let before = usize::try_from(highest - thousands + 1).unwrap_or(1);
+    let mut text = format!("{sign}{short:0<before$}");
+    if short.len() > before {
+        text.insert(sign.len() + before, '.');
+    }
+    if thousands != 0 {
+        text.push_str(&format!("e{thousands}"));
+    }
+    text
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn numbers_have_exponents_in_threes() {
+        let of = |above: i64, below: i64| {
+            decimal(&Rational::new(Integer::from(above), Integer::from(below)).unwrap())
+        };
+        assert_eq!(of(10_000, 1).as_deref(), Some("10e3"));
+        assert_eq!(of(470_000, 1).as_deref(), Some("470e3"));
+        assert_eq!(of(117, 100).as_deref(), Some("1.17"));
+        assert_eq!(of(-22, 10_000_000_000).as_deref(), Some("-2.2e-9"));
+        assert_eq!(of(600, 1).as_deref(), Some("600"));
+        assert_eq!(of(0, 1).as_deref(), Some("0"));
+        assert_eq!(of(1, 3), None);
+    }
 }
