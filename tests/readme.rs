@@ -15,6 +15,7 @@ fn answer(arguments: &[&str]) -> String {
 fn shows_true_answers() {
     let readme = include_str!("../README.md");
     let refuted = "in -Vs- ground; in -R1- out -C1- ground; derive H = voltage(out)/Vs; claim H = 1/(1 - s*R1*C1)";
+    let reduced = "in -Vs- ground; in -R1- a -C1- b -R2- out -C2- ground; out -R3- x -R4- ground; x -R5- ground; derive H = voltage(out)/Vs";
     for arguments in [
         &["formula", "--of", "H", "examples/antialias_filter.cutloop"][..],
         &["formula", "--of", "Zo", "examples/bulk_and_ceramic.cutloop"],
@@ -23,6 +24,7 @@ fn shows_true_answers() {
         &["audit", "--of", "H", "examples/probe_divider.cutloop"],
         &["audit", "--of", "H", "examples/lucky_equaliser.cutloop"],
         &["check", "-e", refuted],
+        &["reduce", "-e", reduced],
     ] {
         let found = answer(arguments);
         assert!(
