@@ -1,12 +1,12 @@
 //! The simplest network with the same derived functions, step by step.
 //!
 //! Passive parts that nothing refers to become edges between nodes; an edge holds a tree of parts in
-//! series and in parallel ([`circuit`]). A node that nobody asks for and that joins two edges makes
+//! series and in parallel (`circuit`). A node that nobody asks for and that joins two edges makes
 //! them one in series, edges between the same nodes become one in parallel, and inside each tree
-//! parts of one class become one part ([`merge`]): in a series string the order of parts is free, so
-//! C–R–C has one capacitor. Edges without current or voltage go ([`idle`]). Every rule is a
+//! parts of one class become one part (`merge`): in a series string the order of parts is free, so
+//! C–R–C has one capacitor. Edges without current or voltage go (`idle`). Every rule is a
 //! well-known equivalence of one-ports; the whole is proven afterwards by comparing functions
-//! ([`proof`]).
+//! (`proof`).
 //!
 //! Values need no protection: the original symbols stay, tied by relations. What must stay are parts
 //! whose current is asked or sensed, parts that a question takes out, coupled coils and parts with

@@ -25,7 +25,7 @@ pub fn same(
         .collect();
     let stated = first.0.all_facts().map(|facts| facts.symbol);
     // A mutual inductance stands in formulas without having been stated.
-    let shown = first.1.results.iter().flat_map(|result| shown(result));
+    let shown = first.1.results.iter().flat_map(shown);
     for own in stated.chain(shown) {
         let name = spelled(first.0.symbols().name(own));
         if let Some(symbol) = second.0.symbols().find(&name) {
