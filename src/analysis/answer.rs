@@ -21,6 +21,7 @@ use crate::analysis::report::{
     Wanted,
 };
 use crate::analysis::solve::{Setting, Solved, natural_polynomial, network_degrees, solve};
+use crate::analysis::states;
 use crate::analysis::witness;
 use crate::budget::{Budget, Exceeded};
 use crate::diagnostic::{Diagnostic, Severity};
@@ -93,6 +94,16 @@ pub fn answer(network: &Network, wanted: &Wanted, budget: &Budget) -> Result<Rep
         table: &table,
         order: &order,
     };
+    if wanted.states {
+        let states = states::answer(&run.setting, &order, wanted)?;
+        return Ok(Report {
+            order: order.clone(),
+            results: Vec::new(),
+            claims: Vec::new(),
+            states: Some(states),
+            warnings: Vec::new(),
+        });
+    }
     run.all(wanted)
 }
 
@@ -194,6 +205,7 @@ impl Run<'_> {
             order: self.order.clone(),
             results,
             claims,
+            states: None,
             warnings,
         })
     }

@@ -33,6 +33,7 @@ pub mod setup;
 pub mod singular;
 mod solve;
 mod stability;
+mod states;
 mod symbolic;
 mod witness;
 

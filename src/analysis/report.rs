@@ -1,5 +1,7 @@
 //! All exact findings, typed. Renderers read these and nothing else of the room.
 
+pub mod states;
+
 use crate::algebra::{Integer, Polynomial, Rational, Symbol};
 use crate::analysis::form::Forms;
 use crate::budget::Exceeded;
@@ -26,6 +28,8 @@ pub struct Report {
     pub results: Vec<FunctionReport>,
     /// One for each claim, in file order; empty unless claims were asked for.
     pub claims: Vec<ClaimReport>,
+    /// State equations, where they were asked for.
+    pub states: Option<states::StatesReport>,
     /// Warnings found while answering.
     pub warnings: Vec<Diagnostic>,
 }
@@ -282,6 +286,8 @@ pub struct Wanted {
     pub cancellations: bool,
     /// Figures at the nominals.
     pub figures: bool,
+    /// State equations, and nothing but them.
+    pub states: bool,
 }
 
 /// Why there is no report.

@@ -124,8 +124,14 @@ pub(crate) fn network_degrees(
     Ok(best.ok_or_else(|| explain(&[])))
 }
 
-/// The polynomial of the natural frequencies, relations put in, without factors that do not hold s.
+/// The polynomial of the natural frequencies, relations put in.
 pub(crate) fn natural_polynomial(setting: &Setting<'_>) -> Result<Option<Polynomial>, Exceeded> {
+    let determinant = natural_determinant(setting)?;
+    Ok(determinant.map(|it| setting.couplings.written(&it, &Polynomial::one()).0))
+}
+
+/// The same with the roots of inductances that couplings by factor bring in.
+pub(crate) fn natural_determinant(setting: &Setting<'_>) -> Result<Option<Polynomial>, Exceeded> {
     let budget = setting.budget;
     let Paired::Pairing(pairing) = Pairing::network(setting.network, &[], budget)? else {
         return Ok(None);
@@ -133,8 +139,7 @@ pub(crate) fn natural_polynomial(setting: &Setting<'_>) -> Result<Option<Polynom
     let symbolic = Symbolic::new(setting.network, setting.rooted, setting.couplings, budget)?;
     let ring = PolynomialRing { budget };
     let (_, determinant) = pairing.expand(&ring, &symbolic)?;
-    let (written, _) = setting.couplings.written(&determinant, &Polynomial::one());
-    Ok(Some(written))
+    Ok(Some(determinant))
 }
 
 /// Builds the determinants of a question and decides its degrees; `None` for functions of functions.

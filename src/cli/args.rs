@@ -49,6 +49,11 @@ pub enum Command {
         after_help = "Example:\n  cutloop reduce -e 'in -Vs- ground; in -R1- a -C1- b -R2- out -C2- ground; derive H = voltage(out)/Vs'\n\nThe reduced network is printed in the language of the input; it is read again, solved and compared\nwith the original. Exit status 3 where that is not decided."
     )]
     Reduce(Reduce),
+    /// Write state equations with symbolic matrices: which voltages and currents are the states
+    #[command(
+        after_help = "Example:\n  cutloop states -e 'in -Vs- ground; in -R1- a -L1- out -C1- ground; derive H = voltage(out)/Vs'\n\nA line `starts voltage(C1) = V0` adds the natural response from that value."
+    )]
+    States(One),
 }
 
 /// Arguments of `check`.

@@ -18,6 +18,8 @@ pub enum Detail {
     Formula,
     /// Degrees, formulas and cancellations.
     Audit,
+    /// State equations.
+    States,
 }
 
 /// Which form of a function is shown.

@@ -2,6 +2,7 @@
 
 mod numbers;
 mod reduction;
+mod states;
 
 use serde_json::{Map, Value, json};
 
@@ -38,7 +39,9 @@ pub fn answer(answer: &Answer<'_>) -> Value {
         object.insert("title".into(), json!(title));
     }
     object.insert("order".into(), order(answer, &answer.report.order));
-    if answer.detail == Detail::Claims {
+    if let Some(found) = &answer.report.states {
+        states::insert(&mut object, answer, found);
+    } else if answer.detail == Detail::Claims {
         let claims = answer.report.claims.iter();
         object.insert(
             "claims".into(),

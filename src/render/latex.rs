@@ -5,6 +5,7 @@ mod equation;
 mod escape;
 mod reduction;
 mod spell;
+mod states;
 mod table;
 
 use crate::analysis::report::FunctionReport;
@@ -26,6 +27,10 @@ pub fn answer(answer: &Answer<'_>) -> String {
         Detail::Order => {
             let account = table::account(&ledger::network(answer));
             sections.push(format!("\\paragraph{{Order of the network}}\n{account}"));
+        }
+        Detail::States => {
+            let systems = answer.report.states.iter().flat_map(|it| &it.systems);
+            sections.extend(systems.map(|it| states::system(answer, it)));
         }
         Detail::Formula | Detail::Audit => {}
     }

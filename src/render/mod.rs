@@ -24,6 +24,7 @@ pub mod product;
 pub mod reduction;
 pub mod sentence;
 pub mod share;
+pub mod states;
 pub mod text;
 
 pub use answer::{Answer, Detail, FormStyle};

@@ -10,6 +10,7 @@ mod formula;
 mod order;
 mod paint;
 mod reduction;
+mod states;
 
 use crate::render::answer::{Answer, Detail};
 use paint::Paint;
@@ -66,6 +67,11 @@ pub fn answer(answer: &Answer<'_>, page: &Page) -> String {
                 sections.push(formula::section(answer, result, &page));
                 sections.push(audit::section(answer, result, &page));
             }
+        }
+        Detail::States => {
+            let systems = answer.report.states.iter().flat_map(|it| &it.systems);
+            sections.extend(systems.map(|it| states::system(answer, it, &page)));
+            sections.push(states::no_output(answer, &page));
         }
     }
     sections.retain(|section| !section.is_empty());

@@ -256,6 +256,7 @@ pub(crate) fn report(order: NetworkOrder, results: Vec<FunctionReport>) -> Repor
         order,
         results,
         claims: Vec::new(),
+        states: None,
         warnings: Vec::new(),
     }
 }

@@ -31,6 +31,7 @@ pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
         }
         Command::Reduce(arguments) => reduce::run(arguments, streams),
         Command::Audit(arguments) => one::run(arguments, shown(Detail::Audit), streams),
+        Command::States(arguments) => one::run(arguments, shown(Detail::States), streams),
     }
 }
 
@@ -112,14 +113,15 @@ fn wanted(detail: Detail, format: Format, of: &[String]) -> Wanted {
         cancellations: match detail {
             Detail::Audit => true,
             Detail::Order => format != Format::Json,
-            Detail::Claims | Detail::Formula => false,
+            Detail::Claims | Detail::Formula | Detail::States => false,
         },
+        states: detail == Detail::States,
     }
 }
 
 fn question(detail: Detail) -> Question {
     match detail {
-        Detail::Claims | Detail::Order => Question::Optional,
+        Detail::Claims | Detail::Order | Detail::States => Question::Optional,
         Detail::Formula | Detail::Audit => Question::Needed,
     }
 }

@@ -478,11 +478,6 @@ impl Lowering<'_> {
         let Ok(value) = self.fraction(value, scope) else {
             return;
         };
-        self.warning(
-            place,
-            "initial values are not available yet",
-            "they come with the state equations",
-        );
         self.builder.start(Start {
             element: id,
             value,

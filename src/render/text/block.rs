@@ -58,6 +58,40 @@ impl Block {
             .collect()
     }
 
+    /// Cells in columns between brackets; a matrix without cells is `( )`.
+    pub(super) fn matrix(cells: &[Vec<String>]) -> Self {
+        let across = cells.first().map_or(0, Vec::len);
+        if across == 0 {
+            return Self::text("( )");
+        }
+        let widths: Vec<usize> = (0..across)
+            .map(|at| cells.iter().map(|row| columns(&row[at])).max().unwrap_or(0))
+            .collect();
+        let last = cells.len() - 1;
+        let lines = cells.iter().enumerate().map(|(index, row)| {
+            let (open, close) = match index {
+                _ if last == 0 => ('(', ')'),
+                0 => ('⎛', '⎞'),
+                _ if index == last => ('⎝', '⎠'),
+                _ => ('⎜', '⎟'),
+            };
+            let row: Vec<String> = row
+                .iter()
+                .zip(&widths)
+                .map(|(cell, width)| {
+                    let gap = width - columns(cell);
+                    let (left, right) = (" ".repeat(gap / 2), " ".repeat(gap - gap / 2));
+                    format!("{left}{cell}{right}")
+                })
+                .collect();
+            format!("{open} {} {close}", row.join("   "))
+        });
+        Self {
+            lines: lines.collect(),
+            baseline: last / 2,
+        }
+    }
+
     /// Side by side on a common baseline.
     pub(super) fn beside(blocks: &[Self]) -> Self {
         let baseline = blocks.iter().map(|it| it.baseline).max().unwrap_or(0);
