@@ -736,6 +736,89 @@ fn polynomials(case: &Case, symbol: &dyn Fn(&str) -> u64) -> (Vec<u64>, Vec<u64>
     (interpolate(&lower), interpolate(&upper))
 }
 
+/// A square system solved; the determinant too.
+fn eliminated(mut rows: Vec<Vec<u64>>, mut right: Vec<u64>) -> Option<(u64, Vec<u64>)> {
+    let size = rows.len();
+    let mut determinant = 1;
+    for at in 0..size {
+        let pivot = (at..size).find(|&row| rows[row][at] != 0)?;
+        if pivot != at {
+            rows.swap(pivot, at);
+            right.swap(pivot, at);
+            determinant = neg(determinant);
+        }
+        determinant = mul(determinant, rows[at][at]);
+        let inverse = inverse(rows[at][at]);
+        for row in (0..size).filter(|&row| row != at) {
+            let factor = neg(mul(rows[row][at], inverse));
+            if factor == 0 {
+                continue;
+            }
+            for column in at..size {
+                rows[row][column] = add(rows[row][column], mul(factor, rows[at][column]));
+            }
+            right[row] = add(right[row], mul(factor, right[at]));
+        }
+    }
+    let solution = (0..size).map(|at| mul(right[at], inverse(rows[at][at])));
+    Some((determinant, solution.collect()))
+}
+
+/// C(sI − A)⁻¹B + D(s) is the response, det(sI − A) the determinant up to a factor free of s.
+fn compare_states(case: &Case, network: &Network, lower: &[u64], seed: u64) {
+    let context = || format!("seed {seed}\n{}", case.text);
+    let wanted = Wanted {
+        states: true,
+        ..Wanted::default()
+    };
+    let report = match answer(network, &wanted, &Budget::default()) {
+        Ok(report) => report,
+        Err(Failure::Budget(_)) if case.nodes > 8 => return,
+        Err(other) => panic!("{other:?}\n{}", context()),
+    };
+    let found = report.states.expect("asked for");
+    let system = &found.systems[0];
+    let size = system.vector.len();
+    assert_eq!(size, lower.len() - 1, "states\n{}", context());
+    let symbol = values(case, seed);
+    let mut ratio = None;
+    for s in [1_000_003, 2_000_003, 3_000_017] {
+        let at = |value: &Fraction| {
+            let above = evaluate(value.numerator(), network, &symbol, s);
+            let below = evaluate(value.denominator(), network, &symbol, s);
+            assert_ne!(below, 0, "unlucky\n{}", context());
+            mul(above, inverse(below))
+        };
+        let driven = |matrices: &[Vec<Vec<Fraction>>], row: usize| {
+            matrices
+                .iter()
+                .rev()
+                .fold(0, |sum, matrix| add(mul(sum, s), at(&matrix[row][0])))
+        };
+        let rows: Vec<Vec<u64>> = (0..size)
+            .map(|row| {
+                let entry = |column| {
+                    let own = if row == column { s } else { 0 };
+                    add(own, neg(at(&system.a[row][column])))
+                };
+                (0..size).map(entry).collect()
+            })
+            .collect();
+        let right = (0..size).map(|row| driven(&system.b, row)).collect();
+        let Some((own, states)) = eliminated(rows, right) else {
+            continue;
+        };
+        let (determinant, response) = solution(case, &symbol, s);
+        let mut output = driven(&system.d, 0);
+        for (weight, state) in system.c[0].iter().zip(&states) {
+            output = add(output, mul(at(weight), *state));
+        }
+        assert_eq!(output, response, "response of the states\n{}", context());
+        let factor = mul(determinant, inverse(own));
+        assert_eq!(*ratio.get_or_insert(factor), factor, "modes\n{}", context());
+    }
+}
+
 /// Whether the case could be solved.
 fn compare(seed: u64) -> bool {
     let case = make(seed);
@@ -814,6 +897,7 @@ fn compare(seed: u64) -> bool {
         assert!(result.zero, "zero function\n{}", context());
         return true;
     }
+    compare_states(&case, &network, &lower, seed);
     let common = gcd_degree(&upper, &lower);
     assert_eq!(
         result.order as usize,

@@ -42,5 +42,11 @@ printed! {
     reduction_of_a_delay_ladder: "reduce", "delay_ladder", "text";
     reduction_of_a_light_receiver: "reduce", "light_receiver", "json";
     reduction_of_a_feedback_pair_in_latex: "reduce", "output_stage_loop", "latex";
+    states_of_a_capacitor_loop: "states", "half_supply", "text";
+    states_of_a_light_receiver: "states", "light_receiver", "text";
+    states_of_a_delay_ladder: "states", "delay_ladder", "text";
+    states_of_coupled_coils: "states", "implant_link", "text";
+    states_of_coupled_coils_in_latex: "states", "implant_link", "latex";
+    states_of_a_capacitor_loop_in_json: "states", "half_supply", "json";
     claims_of_a_lucky_pair: "check", "lucky_equaliser", "text";
 }

@@ -12,8 +12,6 @@ mod proof;
 mod reduction;
 mod row;
 mod tableau;
-#[cfg(test)]
-mod tests;
 mod tree;
 
 use crate::algebra::Fraction;

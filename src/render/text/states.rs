@@ -49,15 +49,7 @@ pub(super) fn no_output(answer: &Answer<'_>, page: &Page) -> String {
     if list.is_empty() {
         return String::new();
     }
-    let (noun, be) = if list.len() == 1 {
-        ("an output", "is")
-    } else {
-        ("outputs", "are")
-    };
-    let sentence = format!(
-        "not {noun} of linear state equations: {} {be} made of others",
-        listed(&list)
-    );
+    let sentence = format!("no output of linear state equations: {}", listed(&list));
     format!("{}\n", Paint(page.colour).quiet(&sentence))
 }
 
@@ -312,6 +304,9 @@ impl Writer<'_> {
                 states::affine(self.answer, self.system, value, self.names, Manner::Reading);
             text.push_str(&self.equation(&format!("{name}(0+)"), &value));
         }
+        if !start.responses.is_empty() {
+            text.push_str("\n  from the starting values alone:\n");
+        }
         for (name, value) in self.outputs().iter().zip(&start.responses) {
             let left = format!("{name}  =  ");
             let side = |it| READING.spell(&math::by_powers_of_s(it, self.names));
@@ -322,7 +317,7 @@ impl Writer<'_> {
                 Block::fraction(&Block::text(above.clone()), &Block::text(below.clone()))
             };
             let block = Block::beside(&[Block::text(left), right]);
-            text.push_str("\n  from the starting values alone:\n\n");
+            text.push('\n');
             if INDENT + block.width() <= self.page.width {
                 text.push_str(&block.indented(INDENT));
             } else {
