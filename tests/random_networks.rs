@@ -754,8 +754,9 @@ fn eliminated(mut rows: Vec<Vec<u64>>, mut right: Vec<u64>) -> Option<(u64, Vec<
             if factor == 0 {
                 continue;
             }
-            for column in at..size {
-                rows[row][column] = add(rows[row][column], mul(factor, rows[at][column]));
+            let pivot = rows[at].clone();
+            for (value, own) in rows[row].iter_mut().zip(&pivot) {
+                *value = add(*value, mul(factor, *own));
             }
             right[row] = add(right[row], mul(factor, right[at]));
         }

@@ -16,6 +16,8 @@ fn shows_true_answers() {
     let readme = include_str!("../README.md");
     let refuted = "in -Vs- ground; in -R1- out -C1- ground; derive H = voltage(out)/Vs; claim H = 1/(1 - s*R1*C1)";
     let reduced = "in -Vs- ground; in -R1- a -C1- b -R2- out -C2- ground; out -R3- x -R4- ground; x -R5- ground; derive H = voltage(out)/Vs";
+    let loop_of_capacitors = "in -Vs- ground; in -C1- out -C2- ground; out -R1- ground; free U0; starts voltage(C2) = U0; derive H = voltage(out)/Vs";
+    assert!(readme.contains(loop_of_capacitors));
     for arguments in [
         &["formula", "--of", "H", "examples/antialias_filter.cutloop"][..],
         &["formula", "--of", "Zo", "examples/bulk_and_ceramic.cutloop"],
@@ -23,6 +25,7 @@ fn shows_true_answers() {
         &["audit", "--of", "H", "examples/monitored_sensor.cutloop"],
         &["audit", "--of", "H", "examples/probe_divider.cutloop"],
         &["audit", "--of", "H", "examples/lucky_equaliser.cutloop"],
+        &["states", "-e", loop_of_capacitors],
         &["check", "-e", refuted],
         &["reduce", "-e", reduced],
     ] {

@@ -105,7 +105,7 @@ impl Trial {
         let answer =
             read.and_then(
                 |network| match analysis::answer(&network, &wanted(&[]), &budget) {
-                    Ok(report) => Ok(Solved { network, report }),
+                    Ok(report) => Ok(Solved::without_figures(network, report)),
                     Err(failure) => Err(format!(
                         "the reduced network was not solved: {}",
                         crate::cli::case::told(&failure)
