@@ -54,6 +54,11 @@ pub enum Command {
         after_help = "Example:\n  cutloop states -e 'in -Vs- ground; in -R1- a -L1- out -C1- ground; derive H = voltage(out)/Vs'\n\nA line `starts voltage(C1) = V0` adds the natural response from that value."
     )]
     States(One),
+    /// Draw the network as an SVG picture
+    #[command(
+        after_help = "Example:\n  cutloop plot filter.cutloop --drawing -o filter.svg\n\nWithout -o the picture goes to standard output."
+    )]
+    Plot(Plot),
 }
 
 /// Arguments of `check`.
@@ -76,6 +81,23 @@ pub struct One {
     /// File to read; - is standard input
     #[arg(id = "file", value_name = "FILE", required_unless_present = "text")]
     pub file: Option<String>,
+    /// What all commands share.
+    #[command(flatten)]
+    pub options: Options,
+}
+
+/// Arguments of `plot`.
+#[derive(Debug, Args)]
+pub struct Plot {
+    /// File to read; - is standard input
+    #[arg(id = "file", value_name = "FILE", required_unless_present = "text")]
+    pub file: Option<String>,
+    /// The drawing of the network
+    #[arg(long)]
+    pub drawing: bool,
+    /// File to write; - is standard output
+    #[arg(short = 'o', long, value_name = "OUT")]
+    pub output: Option<String>,
     /// What all commands share.
     #[command(flatten)]
     pub options: Options,

@@ -25,6 +25,7 @@ pub mod reduction;
 pub mod sentence;
 pub mod share;
 pub mod states;
+pub mod svg;
 pub mod text;
 
 pub use answer::{Answer, Detail, FormStyle};

@@ -3,6 +3,7 @@
 mod check;
 mod json;
 mod one;
+mod plot;
 mod reduce;
 
 use crate::analysis::report::Wanted;
@@ -32,6 +33,7 @@ pub(super) fn run(command: &Command, streams: &mut Streams<'_>) -> Exit {
         Command::Reduce(arguments) => reduce::run(arguments, streams),
         Command::Audit(arguments) => one::run(arguments, shown(Detail::Audit), streams),
         Command::States(arguments) => one::run(arguments, shown(Detail::States), streams),
+        Command::Plot(arguments) => plot::run(arguments, streams),
     }
 }
 
