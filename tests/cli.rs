@@ -348,3 +348,37 @@ fn the_form_of_a_formula_can_be_chosen() {
     assert!(shown("normalised").contains("a0 = R2/(R1 + R2)"));
     assert!(shown("nested").contains("b1 = R1·R2·C1"));
 }
+
+#[test]
+fn a_drawing_goes_to_the_output_or_to_a_file() {
+    let text = "in -Vs- ground; in -R1- out -C1- ground; derive H = voltage(out)/Vs";
+    let run = |more: &[&str]| {
+        std::process::Command::new(env!("CARGO_BIN_EXE_cutloop"))
+            .args(["plot", "-e", text])
+            .args(more)
+            .output()
+            .expect("the command starts")
+    };
+    let shown = run(&["--drawing"]);
+    assert_eq!(shown.status.code(), Some(0));
+    assert!(shown.stdout.starts_with(b"<svg") && shown.stdout.ends_with(b"</svg>\n"));
+    let folder = std::env::temp_dir().join(format!("cutloop-drawing-{}", std::process::id()));
+    std::fs::create_dir_all(&folder).unwrap();
+    let file = folder.join("out.svg");
+    assert_eq!(
+        run(&["--drawing", "-o", file.to_str().unwrap()])
+            .status
+            .code(),
+        Some(0)
+    );
+    assert_eq!(std::fs::read(&file).unwrap(), shown.stdout);
+    assert_eq!(std::fs::read_dir(&folder).unwrap().count(), 1);
+    std::fs::remove_dir_all(&folder).unwrap();
+    assert_eq!(
+        run(&["--drawing", "-o", file.to_str().unwrap()])
+            .status
+            .code(),
+        Some(4)
+    );
+    assert_eq!(run(&[]).status.code(), Some(2));
+}

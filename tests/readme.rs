@@ -46,6 +46,16 @@ fn shows_a_near_pair() {
 }
 
 #[test]
+fn shows_a_command_that_draws() {
+    let readme = include_str!("../README.md");
+    assert!(
+        readme.contains("cutloop plot examples/state_variable_loop.cutloop --drawing -o loop.svg")
+    );
+    let drawn = answer(&["plot", "examples/state_variable_loop.cutloop", "--drawing"]);
+    assert!(drawn.starts_with("<svg") && drawn.contains("<title>U3: opamp</title>"));
+}
+
+#[test]
 fn shows_the_example_it_runs() {
     let readme = include_str!("../README.md");
     assert!(readme.contains(include_str!("../examples/antialias_filter.cutloop").trim()));

@@ -11,8 +11,6 @@ mod place;
 mod plan;
 pub mod shape;
 mod symbol;
-#[cfg(test)]
-mod tests;
 mod tint;
 
 use crate::analysis::report::NetworkOrder;

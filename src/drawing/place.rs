@@ -59,7 +59,6 @@ pub(super) fn place(network: &Network, plan: &Plan, columns: &[NodeId]) -> Drawi
         .collect();
     let x = positions(&seats, &column, &names, &hanging);
     let mut pen = Pen {
-        network,
         column: &column,
         x: &x,
         names: &names,
@@ -139,7 +138,8 @@ fn sit<'a>(item: &'a Item, column: &[Option<usize>], columns: usize) -> Seat<'a>
             .pins
             .iter()
             .filter(|pin| at(pin).is_some_and(|column| (column < gap) != (pin.left != turned)));
-        wrong.count()
+        // A wire around is better at an input than at an output.
+        wrong.map(|pin| if pin.left { 1 } else { 2 }).sum::<usize>()
     };
     let gap = (low..=(high + 1).min(columns))
         .min_by_key(|gap| {
@@ -252,11 +252,10 @@ fn slot(branch: &Branch) -> i32 {
         .parts
         .iter()
         .map(|(item, _)| width(&item.name).max(item.value.as_deref().map_or(0, width)));
-    20 + texts.max().unwrap_or(0) + 18
+    20 + texts.max().unwrap_or(0) + 26
 }
 
 struct Pen<'a> {
-    network: &'a Network,
     column: &'a [Option<usize>],
     x: &'a [(i32, i32)],
     names: &'a [String],
@@ -400,7 +399,6 @@ impl Pen<'_> {
             let role = if port { Role::Port } else { Role::Node };
             self.label(&text, (x, top - 8), false, role);
         }
-        debug_assert!(index < self.network.node_count());
     }
 }
 
