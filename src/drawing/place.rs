@@ -229,9 +229,9 @@ fn positions(
     let mut list = Vec::with_capacity(gaps);
     let mut left = 0;
     let mut hang = i32::MIN;
-    for gap in 0..gaps {
+    for (gap, room) in room.into_iter().enumerate() {
         let half = names.get(gap).map_or(0, |name| width(name) / 2 + 6);
-        let next = (left + room[gap] + half).max(hang).max(left + 24 + half);
+        let next = (left + room + half).max(hang).max(left + 24 + half);
         list.push(((left + next - half) / 2, next));
         let slots: i32 = hanging
             .get(gap)
