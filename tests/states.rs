@@ -66,7 +66,7 @@ fn a_capacitor_loop_shares_its_charge() {
         })
     );
     let response = &found["starts"]["responses"][0];
-    assert_eq!(response["numerator"], json!(["U2*R1*C2 - U1*R1*C1"]));
+    assert_eq!(response["numerator"], json!(["-U1*R1*C1 + U2*R1*C2"]));
     assert_eq!(response["denominator"], json!(["1", "R1*C1 + R1*C2"]));
 }
 
