@@ -258,6 +258,56 @@ fn a_budget_that_is_reached_ends_with_3_and_shows_no_part() {
     assert!(degrees["results"][0].get("numerator").is_none());
 }
 
+/// Two sections that meet by their relations behind a buffer: a product of two factors cancels.
+const TWO_CANCEL: &str = "in -Vs- ground; in -R1- a -C1- ground; in -R2- b -C2- ground; \
+                          in -R3- c -C3- ground; U1 is buffer(in a, out d); \
+                          d -R4- e -R5- ground; d -C4- e -C5- ground; \
+                          R4 = R5; C4 = C5; derive H = voltage(e) / Vs; \
+                          claim cancels(H) = structural, matched; claim cancels(H) = none";
+
+#[test]
+fn an_audit_that_is_cut_short_ends_with_3_and_says_so() {
+    let mut cut = 0;
+    for terms in [1, 2, 3, 4, 5, 6, 8, 10, 12, 16, 20, 30] {
+        let budget = format!("terms={terms}");
+        let run =
+            |rest: &[&str]| cutloop(&[rest, &["--budget", &budget, "-e", TWO_CANCEL]].concat());
+        let machine = run(&["audit", "--format", "json"]);
+        let answer = json(&machine);
+        let result = &answer["results"][0];
+        let short = result["over_budget"]
+            .as_str()
+            .is_some_and(|words| words.starts_with("audit cut short"));
+        if !short {
+            continue;
+        }
+        cut += 1;
+        assert_eq!(status(&machine), 3, "{terms}: {result}");
+        for found in result["cancellations"].as_array().into_iter().flatten() {
+            assert_eq!(found["factored"], false, "{result}");
+        }
+        // A list that could be read as "nothing cancels" is not there.
+        assert_ne!(result["cancellations"], serde_json::json!([]));
+        for format in ["text", "latex"] {
+            let output = run(&["audit", "--format", format]);
+            assert_eq!(status(&output), 3);
+            let shown = String::from_utf8_lossy(&output.stdout).into_owned();
+            assert!(shown.contains("audit cut short"), "{shown}");
+            assert!(!shown.contains("Nothing cancels"), "{shown}");
+        }
+        // What was not found out is not claimed either.
+        let claims = run(&["check", "--format", "json"]);
+        if let Some(claims) = json(&claims)["claims"].as_array() {
+            assert_eq!(claims[0]["holds"], serde_json::Value::Null);
+            assert_ne!(claims[1]["holds"], true);
+        }
+    }
+    assert!(cut > 0);
+    let whole = cutloop(&["audit", "--format", "json", "-e", TWO_CANCEL]);
+    assert_eq!(status(&whole), 0, "{}", errors(&whole));
+    assert!(json(&whole)["results"][0].get("over_budget").is_none());
+}
+
 #[test]
 fn a_result_that_is_long_when_expanded_is_nested_whole() {
     let text = "let N = 8; in -Vs- ground; in -R0- n0\nfor k = 1 .. N\n\

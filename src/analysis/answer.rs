@@ -128,6 +128,7 @@ fn undecided_function(network: &Network, index: usize, exceeded: Exceeded) -> Fu
         origin_when: Vec::new(),
         audit_cut: None,
         cancellations: None,
+        unaudited: None,
         nominals_missing: Vec::new(),
         relied_on: Vec::new(),
         checked_points: 0,
@@ -237,6 +238,7 @@ impl Run<'_> {
             origin_when: Vec::new(),
             audit_cut: None,
             cancellations: Some(Vec::new()),
+            unaudited: None,
             nominals_missing: Vec::new(),
             relied_on: Vec::new(),
             checked_points: 0,
@@ -261,8 +263,8 @@ impl Run<'_> {
                 report.cancellations = Some(audited.cancellations);
             }
             Err(exceeded) => {
-                report.audit_cut = Some(exceeded);
                 report.cancellations = whole(&self.setting, self.table, solved);
+                report.unaudited = Some(exceeded);
             }
         }
         // A part of a factor that cancels has its place there.

@@ -126,8 +126,9 @@ pub struct FunctionReport {
     pub origin_when: Vec<Drop>,
     /// What cancels between numerator and denominator; `None` for functions of functions.
     pub cancellations: Option<Vec<Cancellation>>,
-    /// The budget that was reached before all cancellations were told apart.
-    pub audit_cut: Option<Exceeded>,
+    /// The budget that cut the search for cancellations short: what stands in `cancellations` was
+    /// reached before, and more may cancel.
+    pub unaudited: Option<Exceeded>,
     /// Names of symbols with a nominal missing, when coincidental cancellations were not looked for.
     pub nominals_missing: Vec<String>,
     /// Signs and assumptions that were used, as text.

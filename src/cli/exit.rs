@@ -35,7 +35,7 @@ impl Exit {
         }
     }
 
-    /// What a report amounts to. Formulas and cancellations count where they were asked for.
+    /// What a report amounts to. Formulas count where they were asked for, and so do cancellations.
     #[must_use]
     pub fn of_report(report: &Report, wanted: &Wanted) -> Self {
         let claims = report.claims.iter().map(|claim| match claim.holds {
@@ -43,11 +43,10 @@ impl Exit {
             Verdict::No => Self::Refuted,
             Verdict::Undecided => Self::Undecided,
         });
+        let audited = wanted.formulas && wanted.cancellations;
         let results = report.results.iter().map(|result| match result.formula {
             Formula::OverBudget(_) if wanted.formulas || !result.degrees_known() => Self::Undecided,
-            _ if wanted.formulas && wanted.cancellations && result.audit_cut.is_some() => {
-                Self::Undecided
-            }
+            _ if audited && result.unaudited.is_some() => Self::Undecided,
             _ => Self::Answered,
         });
         claims.chain(results).max().unwrap_or(Self::Answered)

@@ -134,14 +134,8 @@ fn result(answer: &Answer<'_>, result: &FunctionReport) -> Value {
         insert_forms(&mut object, &result.forms, &names);
     }
     insert_degrees(&mut object, answer, result, &names);
-    if answer.detail == Detail::Audit
-        && let Some(list) = &result.cancellations
-    {
-        let figures = answer.figures_of(result);
-        let numbers = |index: usize| figures.and_then(|it| it.cancelled.get(index));
-        let list = list.iter().enumerate();
-        let list = list.map(|(index, it)| cancellation(answer, it, numbers(index), &names));
-        object.insert("cancellations".into(), list.collect());
+    if answer.detail == Detail::Audit {
+        insert_cancellations(&mut object, answer, result, &names);
     }
     if let Some(exceeded) = &result.audit_cut {
         object.insert("audit_over_budget".into(), json!(exceeded.to_string()));
@@ -381,12 +375,25 @@ fn drop(drop: &Drop, names: &Names<'_>) -> Value {
     Value::Object(object)
 }
 
-fn cancellation(
+/// What cancels. An empty list says that nothing does, so a search cut short shows none.
+fn insert_cancellations(
+    object: &mut Object,
     answer: &Answer<'_>,
-    it: &Cancellation,
-    figures: Option<&Cancelled>,
+    result: &FunctionReport,
     names: &Names<'_>,
-) -> Value {
+) {
+    if let Some(list) = &result.cancellations
+        && (!list.is_empty() || result.unaudited.is_none())
+    {
+        let list = list.iter().map(|it| cancellation(answer, it, names));
+        object.insert("cancellations".into(), list.collect());
+    }
+    if let Some(words) = sentence::cut_short(result) {
+        object.entry("over_budget").or_insert_with(|| json!(words));
+    }
+}
+
+fn cancellation(answer: &Answer<'_>, it: &Cancellation, names: &Names<'_>) -> Value {
     let mut object = Object::new();
     object.insert("class".into(), json!(sentence::class(it.class)));
     object.insert("factor".into(), json!(expression(&it.factor, names)));

@@ -15,11 +15,21 @@ pub fn verdict(verdict: Verdict) -> &'static str {
     }
 }
 
-/// What stands in place of cancellations that were not found; functions of functions have none.
+/// What an audit that was cut short leaves open, with the way on; `None` where it was not.
 #[must_use]
-pub fn uncancelled(result: &FunctionReport) -> Option<&'static str> {
-    let missing = result.network.is_some() && result.cancellations.is_none();
-    missing.then_some("What cancels was counted; its factors were not found within the budget.")
+pub fn cut_short(result: &FunctionReport) -> Option<String> {
+    let exceeded = result.unaudited?;
+    let reached = match &result.cancellations {
+        None => "what cancels was counted, its factors were not found",
+        Some(list) if list.is_empty() => {
+            "nothing cancels for all values; coincidences at the nominals were not looked for"
+        }
+        Some(_) => "what cancels is one product, not split; coincidences were not looked for",
+    };
+    Some(format!(
+        "audit cut short: {reached}; {exceeded}; allow more: {}",
+        exceeded.further()
+    ))
 }
 
 /// The class of a cancellation.

@@ -227,6 +227,7 @@ pub(crate) fn function(name: &str, formula: Formula, order: u32, network: u32) -
         origin_when: Vec::new(),
         audit_cut: None,
         cancellations: Some(Vec::new()),
+        unaudited: None,
         nominals_missing: Vec::new(),
         relied_on: Vec::new(),
         checked_points: 8,

@@ -71,12 +71,11 @@ fn spell_evidence(evidence: &Evidence) -> String {
 
 /// What cancels in one function; empty for functions of functions.
 pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> String {
-    let figures = answer.figures_of(result);
+    let cut_short = sentence::cut_short(result)
+        .map_or_else(String::new, |words| format!("{}.\n", escape(&words)));
     let list = match &result.cancellations {
-        None => {
-            let words = sentence::uncancelled(result);
-            return words.map_or_else(String::new, |words| format!("{words}\n"));
-        }
+        None => return cut_short,
+        Some(list) if list.is_empty() && result.unaudited.is_some() => return cut_short,
         Some(list) if list.is_empty() => {
             let words = format!("Nothing cancels in ${}$.\n", name(&result.name));
             return words + &near(figures);
@@ -107,25 +106,5 @@ pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> Str
             );
         }
     }
-    let near = near(figures);
-    format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n{drifts}{near}")
-}
-
-/// What one per cent of a part does to a cancelled pair.
-fn drift_table(rows: Vec<[String; 4]>) -> String {
-    let row = |cells: &[String; 4]| {
-        let cells: Vec<String> = cells.iter().map(|cell| escape(cell)).collect();
-        format!("  {} \\\\\n", cells.join(" & "))
-    };
-    let rows: String = rows.iter().map(row).collect();
-    format!("\n\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n")
-}
-
-/// Pairs that almost cancel, a paragraph each.
-fn near(figures: Option<&FunctionFigures>) -> String {
-    let pairs = figures.map_or(&[][..], |figures| &figures.near);
-    let upper = pairs.iter().filter(|it| it.pole.im >= 0.0);
-    upper
-        .map(|it| format!("\nNear: {}.\n", escape(&figures::near(it).join("; "))))
-        .collect()
+    format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n{cut_short}")
 }

@@ -23,8 +23,8 @@ pub(super) fn words(items: &[String], between: &str, width: usize) -> Vec<String
                 line.push_str(item);
             }
             Some(line) => {
-                if between.starts_with(',') {
-                    line.push(',');
+                if between.starts_with([',', ';']) {
+                    line.push_str(between.trim_end());
                 }
                 lines.push(item.clone());
             }
