@@ -137,9 +137,6 @@ fn result(answer: &Answer<'_>, result: &FunctionReport) -> Value {
     if answer.detail == Detail::Audit {
         insert_cancellations(&mut object, answer, result, &names);
     }
-    if let Some(exceeded) = &result.audit_cut {
-        object.insert("audit_over_budget".into(), json!(exceeded.to_string()));
-    }
     if let Some(figures) = answer.figures_of(result)
         && figures.quotient.is_some()
     {
@@ -385,7 +382,10 @@ fn insert_cancellations(
     if let Some(list) = &result.cancellations
         && (!list.is_empty() || result.unaudited.is_none())
     {
-        let list = list.iter().map(|it| cancellation(answer, it, names));
+        let figures = answer.figures_of(result);
+        let numbers = |index: usize| figures.and_then(|it| it.cancelled.get(index));
+        let list = list.iter().enumerate();
+        let list = list.map(|(index, it)| cancellation(answer, it, numbers(index), names));
         object.insert("cancellations".into(), list.collect());
     }
     if let Some(words) = sentence::cut_short(result) {

@@ -225,7 +225,6 @@ pub(crate) fn function(name: &str, formula: Formula, order: u32, network: u32) -
         no_effect: Vec::new(),
         drops_when: Vec::new(),
         origin_when: Vec::new(),
-        audit_cut: None,
         cancellations: Some(Vec::new()),
         unaudited: None,
         nominals_missing: Vec::new(),

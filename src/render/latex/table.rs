@@ -73,6 +73,7 @@ fn spell_evidence(evidence: &Evidence) -> String {
 pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> String {
     let cut_short = sentence::cut_short(result)
         .map_or_else(String::new, |words| format!("{}.\n", escape(&words)));
+    let figures = answer.figures_of(result);
     let list = match &result.cancellations {
         None => return cut_short,
         Some(list) if list.is_empty() && result.unaudited.is_some() => return cut_short,
@@ -106,5 +107,6 @@ pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> Str
             );
         }
     }
-    format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n{cut_short}")
+    let near = near(figures);
+    format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n{cut_short}{drifts}{near}")
 }

@@ -35,10 +35,6 @@ pub(super) fn section(answer: &Answer<'_>, result: &FunctionReport, page: &Page)
     }
     // Lines are broken: the blanks inside quantities need no more protection.
     text = text.replace('\u{a0}', " ");
-    if let Some(exceeded) = &result.audit_cut {
-        let words = format!("  Not all was told apart: {exceeded}.\n");
-        text.push_str(&paint.quiet(&words));
-    }
     text.push_str(&cut_short(result, page));
     if !result.nominals_missing.is_empty() {
         let mut items = result.nominals_missing.clone();
