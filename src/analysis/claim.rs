@@ -394,6 +394,38 @@ impl Evidence<'_> {
         ))
     }
 
+    /// Whether a function that is proven stable stands in a network with a mode that grows: what a
+    /// formula does not show.
+    pub(crate) fn at_terminals_only(&self, claim: &Claim) -> Result<bool, Exceeded> {
+        let Assertion::Stable {
+            subject: Subject::Function(function),
+            within_tolerance,
+        } = claim.assertion
+        else {
+            return Ok(false);
+        };
+        let question = self.network.question_of(function);
+        let question = question.map(|index| &self.network.questions()[index]);
+        let of_whole_network = question.is_some_and(|it| {
+            it.without.is_empty() && matches!(it.ask, Ask::Transfer { .. } | Ask::Impedance(_))
+        });
+        let Some(natural) = self.natural.filter(|_| of_whole_network) else {
+            return Ok(false);
+        };
+        // Charge that stays is no mode that grows.
+        let moving = Monomial::power(Symbol::S, natural.valuation(Symbol::S));
+        let moving = natural.div_exact(&Polynomial::monomial(Integer::one(), moving));
+        let narrowed;
+        let knowledge = if within_tolerance {
+            narrowed = self.knowledge.within_tolerance();
+            &narrowed
+        } else {
+            self.knowledge
+        };
+        let moving = moving.unwrap_or_else(Polynomial::one);
+        Ok(decide(&moving, knowledge, self.budget)?.verdict == Verdict::No)
+    }
+
     fn cancels(&self, function: Symbol, claimed: &[CancellationClass]) -> Decision {
         let Some(report) = (self.report)(function) else {
             return not_known();

@@ -125,6 +125,9 @@ impl Case {
     /// How the run ends as far as this text is concerned.
     pub(super) fn exit(&self, wanted: &Wanted) -> Exit {
         match &self.outcome {
+            Ok(solved) if solved.figures_cut => {
+                Exit::of_report(&solved.report, wanted).max(Exit::Undecided)
+            }
             Ok(solved) => Exit::of_report(&solved.report, wanted),
             Err(unsolved) => unsolved.exit,
         }

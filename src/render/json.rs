@@ -393,7 +393,12 @@ fn insert_cancellations(
     }
 }
 
-fn cancellation(answer: &Answer<'_>, it: &Cancellation, names: &Names<'_>) -> Value {
+fn cancellation(
+    answer: &Answer<'_>,
+    it: &Cancellation,
+    figures: Option<&Cancelled>,
+    names: &Names<'_>,
+) -> Value {
     let mut object = Object::new();
     object.insert("class".into(), json!(sentence::class(it.class)));
     object.insert("factor".into(), json!(expression(&it.factor, names)));

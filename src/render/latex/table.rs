@@ -110,3 +110,22 @@ pub(super) fn cancellations(answer: &Answer<'_>, result: &FunctionReport) -> Str
     let near = near(figures);
     format!("\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n{cut_short}{drifts}{near}")
 }
+
+/// What one per cent of a part does to a cancelled pair.
+fn drift_table(rows: Vec<[String; 4]>) -> String {
+    let row = |cells: &[String; 4]| {
+        let cells: Vec<String> = cells.iter().map(|cell| escape(cell)).collect();
+        format!("  {} \\\\\n", cells.join(" & "))
+    };
+    let rows: String = rows.iter().map(row).collect();
+    format!("\n\\begin{{tabular}}{{llll}}\n{rows}\\end{{tabular}}\n")
+}
+
+/// Pairs that almost cancel, a paragraph each.
+fn near(figures: Option<&FunctionFigures>) -> String {
+    let pairs = figures.map_or(&[][..], |figures| &figures.near);
+    let upper = pairs.iter().filter(|it| it.pole.im >= 0.0);
+    upper
+        .map(|it| format!("\nNear: {}.\n", escape(&figures::near(it).join("; "))))
+        .collect()
+}

@@ -58,8 +58,63 @@ fn cut_short(result: &FunctionReport, page: &Page) -> String {
         .collect()
 }
 
-fn cancellation(answer: &Answer<'_>, it: &Cancellation, page: &Page) -> String {
-    const COLUMN: usize = 17;
+/// Pairs that almost cancel.
+fn near(figures: &FunctionFigures, page: &Page) -> String {
+    let upper = figures.near.iter().filter(|it| it.pole.im >= 0.0);
+    let mut text = String::new();
+    for it in upper {
+        let mut front = format!("{:<COLUMN$}", "  near");
+        for (index, clause) in figures::near(it).into_iter().enumerate() {
+            for line in evidence_lines(&Evidence::Clause(clause), page.width - COLUMN) {
+                let line = match index {
+                    0 => line,
+                    _ => Paint(page.colour).quiet(&line),
+                };
+                text.push_str(&format!("{front}{line}\n"));
+                front = " ".repeat(COLUMN);
+            }
+        }
+    }
+    text
+}
+
+/// What one per cent of a part does to a cancelled pair.
+fn drifts(numbers: &Cancelled, page: &Page) -> String {
+    let paint = Paint(page.colour);
+    let mut text = String::new();
+    for rows in numbers
+        .drifts
+        .iter()
+        .filter_map(|list| figures::drifts(list))
+    {
+        let mut widths = [0; 4];
+        for row in &rows {
+            for (width, cell) in widths.iter_mut().zip(row) {
+                *width = (*width).max(columns(cell));
+            }
+        }
+        for row in &rows {
+            let mut line = String::new();
+            for (width, cell) in widths.iter().zip(row) {
+                line.push_str(cell);
+                line.push_str(&" ".repeat(width + 3 - columns(cell)));
+            }
+            let line = paint.quiet(line.trim_end());
+            text.push_str(&format!("{}{line}\n", " ".repeat(COLUMN)));
+        }
+    }
+    text
+}
+
+/// Where the words about a cancellation begin.
+const COLUMN: usize = 17;
+
+fn cancellation(
+    answer: &Answer<'_>,
+    it: &Cancellation,
+    numbers: Option<&Cancelled>,
+    page: &Page,
+) -> String {
     let names = answer.names(FrequencyPlace::First);
     let factor = math::by_powers_of_s(&it.factor, &names).power(it.multiplicity);
     let mut text = format!("  {}", sentence::class(it.class));
