@@ -107,7 +107,7 @@ impl<'a> Nominals<'a> {
         names.into_iter().collect()
     }
 
-    /// Σ coefficients[k]·s^k at the nominals, and the number it is to be divided by.
+    /// Σ c_k·s^k at the nominals, and the number it is to be divided by.
     #[must_use]
     pub fn in_s(&self, polynomial: &Polynomial) -> (Polynomial, Integer) {
         polynomial.evaluate(&|symbol| self.values.get(&symbol).cloned())

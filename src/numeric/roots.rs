@@ -306,7 +306,7 @@ fn value_and_slope(
     (value, slope)
 }
 
-/// Σ coefficients[k] · at^k, exactly.
+/// Σ c_k · at^k, exactly.
 #[must_use]
 pub fn value_at(coefficients: &[Big], at: &BigComplex) -> BigComplex {
     let mut value = BigComplex::zero();
