@@ -135,16 +135,6 @@ impl Case {
 }
 
 impl Solved {
-    /// An answer that asks for no figures.
-    pub(super) fn without_figures(network: Network, report: Report) -> Self {
-        Self {
-            network,
-            report,
-            figures: Vec::new(),
-            figures_cut: false,
-        }
-    }
-
     /// Adds the figures where they are wanted; where the budget ends before them a warning says so.
     fn new(network: Network, mut report: Report, wanted: &Wanted, budget: &Budget) -> Self {
         let figures = if wanted.figures {

@@ -1,11 +1,11 @@
 //! `reduce`: the simplest network with the same derived functions.
 
-use crate::analysis::report::{Verdict, Wanted};
+use crate::analysis::report::{Report, Verdict, Wanted};
 use crate::analysis::{self, equivalent, equivalent::proof};
 
 use crate::budget::Budget;
 use crate::cli::args::{Format, Options, Reduce};
-use crate::cli::case::{Case, Question, Solved};
+use crate::cli::case::{Case, Question};
 use crate::cli::command::{explain_all, json as errors, page};
 use crate::cli::exit::Exit;
 use crate::cli::input::{Origin, used};
@@ -45,7 +45,7 @@ pub(super) fn run(arguments: &Reduce, streams: &mut Streams<'_>) -> Exit {
             let spelled = |name: &str| written.spelled(name);
             let budget = Budget::new(options.budget.unwrap_or_default());
             let first = (&solved.network, &solved.report);
-            proven = proof::same(first, (&again.network, &again.report), &spelled, &budget);
+            proven = proof::same(first, (&again.0, &again.1), &spelled, &budget);
             if proven == Verdict::Undecided {
                 doubts.push("the functions were not compared whole within the budget".to_owned());
             }
@@ -67,7 +67,7 @@ pub(super) fn run(arguments: &Reduce, streams: &mut Streams<'_>) -> Exit {
         text: again.map(|_| written.text.as_str()),
         proven,
         doubts,
-        remarks: again.map_or(Vec::new(), |it| remarks(&it.network, &it.report)),
+        remarks: again.map_or(Vec::new(), |it| remarks(&it.0, &it.1)),
     };
     let exit = match proven {
         Verdict::Yes => Exit::Answered,
@@ -95,7 +95,7 @@ fn wanted(of: &[String]) -> Wanted {
 
 /// The printed network, read and answered like any other.
 struct Trial {
-    answer: Result<Solved, String>,
+    answer: Result<(Network, Report), String>,
 }
 
 impl Trial {
@@ -105,7 +105,7 @@ impl Trial {
         let answer =
             read.and_then(
                 |network| match analysis::answer(&network, &wanted(&[]), &budget) {
-                    Ok(report) => Ok(Solved::without_figures(network, report)),
+                    Ok(report) => Ok((network, report)),
                     Err(failure) => Err(format!(
                         "the reduced network was not solved: {}",
                         crate::cli::case::told(&failure)
