@@ -263,3 +263,39 @@ fn too_many_parts_are_counted() {
     let text = "in -Vs- ground\nfor k = 1 .. 50\nn{k} -R{k}- ground\nn{k} -C{k}- in\nend";
     assert_eq!(draw(&network("wide", text), &no_order()).unwrap_err(), 101);
 }
+
+#[test]
+fn the_checks_find_a_moved_label_a_cut_net_and_a_bridge() {
+    let text =
+        "in -Vs- ground; in -R1(10k)- out -C1- ground; in -R2- out; derive H = voltage(out)/Vs";
+    let network = network("divider", text);
+    let whole = draw(&network, &no_order()).unwrap();
+    assert!(faults(&network, &whole).is_empty());
+    let mut moved = whole.clone();
+    let first = &moved.symbols[0];
+    moved.labels[0].at = (
+        (first.low.0 + first.high.0) / 2,
+        (first.low.1 + first.high.1) / 2,
+    );
+    assert!(!faults(&network, &moved).is_empty());
+    for index in 0..whole.wires.len() {
+        let mut cut = whole.clone();
+        cut.wires.remove(index);
+        assert!(
+            !faults(&network, &cut).is_empty(),
+            "wire {index} is not missed"
+        );
+    }
+    let mut bridged = whole.clone();
+    let (a, b) = (whole.symbols[0].pins[0], whole.symbols[0].pins[1]);
+    bridged.wires.push(Wire {
+        from: a.0,
+        to: b.0,
+        node: a.1,
+        tint: None,
+    });
+    assert!(!faults(&network, &bridged).is_empty());
+    let mut lost = whole.clone();
+    lost.symbols.pop();
+    assert!(!faults(&network, &lost).is_empty());
+}

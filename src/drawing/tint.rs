@@ -19,7 +19,10 @@ pub(super) fn tint(drawing: &mut Drawing, network: &Network, order: &NetworkOrde
     for members in &order.capacitor_loops {
         mark(drawing, members, Tint::Loop);
         notes.push((
-            format!("{} form a loop and share a state", names(network, members)),
+            format!(
+                "{} form a loop, which takes one state away",
+                names(network, members)
+            ),
             Role::Tinted(Tint::Loop),
         ));
     }
